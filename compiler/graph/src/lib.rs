@@ -1,0 +1,27 @@
+//! One graph of quantities, many readings.
+//!
+//! Every quantity of a sheet, each body's mass, centre and tensor included, is
+//! a node of one arena. Equal expressions are one node (hash-consing). A node's
+//! operands always have smaller numbers than the node, so one pass over the
+//! arena in order evaluates it; no reading recurses.
+//!
+//! Readings so far: the value ([`evaluate`], [`Cone`]), the derivative
+//! ([`tangents`]) with the reach of rounding ([`rounding`]), and the formula
+//! ([`formula`]). [`Parts`] cuts out what a few inputs move as a small graph of
+//! its own. Enclosures and samples are to be further passes over the same nodes. The graph knows numbers in coherent SI units and must
+//! never know units, kinds, names' scopes or text positions.
+
+mod derivative;
+mod eigen;
+mod formula;
+mod hash;
+mod node;
+mod part;
+mod value;
+
+pub use derivative::{partials, rounding, tangents};
+pub use eigen::{Principal, principal};
+pub use formula::{Formula, formula};
+pub use node::{CompareOp, Function, Graph, InputId, LiteralId, NodeId, Op, QuantityId, TensorId};
+pub use part::{Part, Parts};
+pub use value::{Cone, evaluate, evaluate_into, value_of, value_with};

@@ -1,0 +1,595 @@
+//! Rotors: parts put together on an axis.
+//!
+//! Moments are summed part by part about the axis or centre asked for
+//! (parallel-axis theorem, J = J_c + m a^2; mechanics handbooks), so nothing
+//! large is subtracted from anything large.
+
+use super::axes::Axis;
+use super::bodies::Body;
+use super::fields::Fields;
+use super::space::{Arithmetic, Rotation, Tensor, Vector};
+use super::value::{Entity, Object, Typed, Value};
+use super::{Env, Lowerer};
+use crate::codes;
+use crate::results::{Group, Shown};
+use pintle_graph::{NodeId, Op};
+use pintle_syntax::ast::{Item, Name, Placement};
+use pintle_text::{Diagnostic, Place};
+use smol_str::SmolStr;
+use std::rc::Rc;
+
+/// What one part brings, in the sheet's frame; removed material has negative mass.
+#[derive(Clone, Debug)]
+pub struct Contribution {
+    /// kg
+    pub mass: NodeId,
+    /// m
+    pub centre: Vector,
+    /// About its own centre, axes of the sheet; None where only the axial moment is known.
+    pub tensor: Option<Tensor>,
+    /// About its own centre along the running axis.
+    pub axial: NodeId,
+    /// Greatest distance from the running axis, m; None for removed material.
+    pub reach: Option<NodeId>,
+}
+
+/// A rotor.
+#[derive(Clone, Debug)]
+pub struct Rotor {
+    /// Its parts.
+    pub contributions: Vec<Contribution>,
+    /// Its running axis.
+    pub axis: Axis,
+    /// Moment of inertia about it, kg*m^2.
+    pub moment: NodeId,
+    /// Greatest radius, m.
+    pub reach: Option<NodeId>,
+}
+
+/// Where an alias stands, for `less ... from`.
+struct Alias {
+    name: SmolStr,
+    origin: Vector,
+    turn: Rotation,
+    density: Option<NodeId>,
+}
+
+impl<'s> Lowerer<'s, '_> {
+    pub(super) fn rotor(
+        &mut self,
+        env: &mut Env,
+        item: &'s Item,
+        name: &Name,
+        axis: Option<&Name>,
+        placements: &'s [Placement],
+    ) -> Value {
+        let place = env.place(name.span);
+        let axis = match axis {
+            Some(axis) => match self.named_axis(env, axis) {
+                Some(axis) => axis,
+                None => return Value::Failed,
+            },
+            None => {
+                let origin = self.origin();
+                self.coordinate_axis("x").unwrap_or(Axis { through: origin, along: origin })
+            }
+        };
+        let mut contributions = Vec::new();
+        let mut aliases = Vec::new();
+        let mut fine = !placements.is_empty();
+        if placements.is_empty() {
+            self.report(
+                Diagnostic::new(codes::MISSING_FIELD, place, format!("the rotor `{}` holds no part", name.text))
+                    .with_help("name its parts in the braces: `BODY at 0 mm`"),
+            );
+        }
+        for placement in placements {
+            match &placement.clauses.repeat {
+                Some(repeat) => {
+                    let done = self.repeated(env, repeat, |this, env| {
+                        this.placement(env, item, name, &axis, placement, &mut contributions, &mut aliases)
+                    });
+                    fine &= done.iter().all(Option::is_some);
+                }
+                None => {
+                    fine &=
+                        self.placement(env, item, name, &axis, placement, &mut contributions, &mut aliases).is_some()
+                }
+            }
+        }
+        if !fine || contributions.is_empty() {
+            return Value::Failed;
+        }
+        self.rotor_of(name, place, axis, contributions)
+    }
+
+    fn rotor_of(&mut self, name: &Name, place: Place, axis: Axis, contributions: Vec<Contribution>) -> Value {
+        let owner = name.text.clone();
+        let mut members: Vec<(SmolStr, Value)> = Vec::new();
+        let masses: Vec<NodeId> = contributions.iter().map(|part| part.mass).collect();
+        let mass = self.sum(&masses);
+        let mass_value = self.built_in(format!("{owner}.mass"), Group::Rotor, Shown::Always, "mass", mass, place);
+        let mass = node_of(&mass_value, mass);
+        members.push(("mass".into(), mass_value));
+        let moment = self.axial_moment(&contributions, &axis);
+        let moment_value =
+            self.built_in(format!("{owner}.J"), Group::Rotor, Shown::Always, "moment_of_inertia", moment, place);
+        let moment = node_of(&moment_value, moment);
+        members.push(("J".into(), moment_value));
+        let mut centre = self.origin();
+        for (at, slot) in centre.iter_mut().enumerate() {
+            let terms: Vec<NodeId> = contributions.iter().map(|part| self.times(part.mass, part.centre[at])).collect();
+            let sum = self.sum(&terms);
+            *slot = self.over(sum, mass);
+        }
+        let mut centre_members = Vec::new();
+        for (at, word) in ["x", "y", "z"].into_iter().enumerate() {
+            let value = self.built_in(
+                format!("{owner}.centre.{word}"),
+                Group::Rotor,
+                Shown::OnRequest,
+                "length",
+                centre[at],
+                place,
+            );
+            centre[at] = node_of(&value, centre[at]);
+            centre_members.push((word.into(), value));
+        }
+        members.push(("centre".into(), Value::plain(format!("{owner}.centre"), "a point", centre_members)));
+        let radius = self.over(moment, mass);
+        let radius = self.root(radius);
+        members.push((
+            "gyration_radius".into(),
+            self.built_in(
+                format!("{owner}.gyration_radius"),
+                Group::Rotor,
+                Shown::OnRequest,
+                "gyration_radius",
+                radius,
+                place,
+            ),
+        ));
+        let reaches: Vec<NodeId> = contributions.iter().filter_map(|part| part.reach).collect();
+        let mut reach = None;
+        for node in reaches {
+            reach = Some(match reach {
+                None => node,
+                Some(so_far) if so_far == node => node,
+                Some(so_far) => self.out.model.graph.add(Op::Max(so_far, node)),
+            });
+        }
+        if let Some(node) = reach {
+            let value =
+                self.built_in(format!("{owner}.rim_radius"), Group::Rotor, Shown::OnRequest, "radius", node, place);
+            reach = Some(node_of(&value, node));
+            members.push(("rim_radius".into(), value));
+        }
+        self.tensor_members(&owner, place, &axis, &contributions, mass, centre, &mut members);
+        Value::Object(Rc::new(Object {
+            name: owner,
+            what: "a rotor",
+            members,
+            entity: Entity::Rotor(Rotor { contributions, axis, moment, reach }),
+        }))
+    }
+
+    #[allow(clippy::too_many_arguments)]
+    fn tensor_members(
+        &mut self,
+        owner: &SmolStr,
+        place: Place,
+        axis: &Axis,
+        contributions: &[Contribution],
+        mass: NodeId,
+        centre: Vector,
+        members: &mut Vec<(SmolStr, Value)>,
+    ) {
+        // Static unbalance: mass times the distance of its centre from the axis.
+        let offset = self.between(centre, axis.through);
+        let square = self.distance_squared(offset, axis.along);
+        let distance = self.root(square);
+        let stat = self.times(mass, distance);
+        let mut unbalance: Vec<(SmolStr, Value)> = vec![(
+            "static".into(),
+            self.built_in(
+                format!("{owner}.unbalance.static"),
+                Group::Rotor,
+                Shown::OnRequest,
+                "unbalance",
+                stat,
+                place,
+            ),
+        )];
+        let turn = self.turn_x_to(axis.along);
+        let own = |this: &mut Self, v: Vector| -> Vector {
+            std::array::from_fn(|column| {
+                let terms = [
+                    this.times(turn[0][column], v[0]),
+                    this.times(turn[1][column], v[1]),
+                    this.times(turn[2][column], v[2]),
+                ];
+                this.sum(&terms)
+            })
+        };
+        let local = own(self, offset);
+        let angle = self.out.model.graph.add(Op::Atan2(local[2], local[1]));
+        unbalance.push((
+            "static_angle".into(),
+            self.built_in(
+                format!("{owner}.unbalance.static_angle"),
+                Group::Rotor,
+                Shown::OnRequest,
+                "angle",
+                angle,
+                place,
+            ),
+        ));
+        let Some(tensor) = self.central_tensor(contributions, centre) else {
+            members.push(("unbalance".into(), Value::plain(format!("{owner}.unbalance"), "an unbalance", unbalance)));
+            return;
+        };
+        let words = ["xx", "yy", "zz", "xy", "xz", "yz"];
+        let mut named = tensor;
+        let mut tensor_members = Vec::new();
+        for (at, word) in words.into_iter().enumerate() {
+            let value = self.built_in(
+                format!("{owner}.tensor.{word}"),
+                Group::Rotor,
+                Shown::OnRequest,
+                "moment_of_inertia",
+                tensor[at],
+                place,
+            );
+            named[at] = node_of(&value, tensor[at]);
+            tensor_members.push((word.into(), value));
+        }
+        members.push(("tensor".into(), Value::plain(format!("{owner}.tensor"), "a tensor", tensor_members)));
+        let mut products = Vec::new();
+        for (at, word) in words.into_iter().enumerate().skip(3) {
+            let node = self.negate(named[at]);
+            let value = self.built_in(
+                format!("{owner}.product.{word}"),
+                Group::Rotor,
+                Shown::OnRequest,
+                "moment_of_inertia",
+                node,
+                place,
+            );
+            products.push((word.into(), value));
+        }
+        members.push(("product".into(), Value::plain(format!("{owner}.product"), "products of inertia", products)));
+        let id = self.out.model.graph.tensor_of(named);
+        let mut principal = Vec::new();
+        for (rank, word) in ["least", "middle", "greatest"].into_iter().enumerate() {
+            let node = self.out.model.graph.add(Op::PrincipalMoment(id, rank as u8));
+            let name = format!("{owner}.principal.{word}");
+            let value = self.built_in(name, Group::Rotor, Shown::OnRequest, "moment_of_inertia", node, place);
+            principal.push((word.into(), value));
+            let mut axis_members = Vec::new();
+            for (component, letter) in ["x", "y", "z"].into_iter().enumerate() {
+                let node = self.out.model.graph.add(Op::PrincipalAxis(id, rank as u8, component as u8));
+                let ty = pintle_units::Type::number();
+                axis_members.push((letter.into(), Value::Number(Typed { node, ty, place })));
+            }
+            let name = format!("{owner}.principal.{word}_axis");
+            principal.push((format!("{word}_axis").into(), Value::plain(name, "a direction", axis_members)));
+        }
+        members.push(("principal".into(), Value::plain(format!("{owner}.principal"), "principal moments", principal)));
+        // Couple unbalance: the products of inertia that hold the running axis.
+        let columns: [Vector; 3] = std::array::from_fn(|column| [turn[0][column], turn[1][column], turn[2][column]]);
+        let full = [[named[0], named[3], named[4]], [named[3], named[1], named[5]], [named[4], named[5], named[2]]];
+        let along_axis: Vector = full.map(|row| self.dot(row, columns[0]));
+        let (xy, xz) = (self.dot(along_axis, columns[1]), self.dot(along_axis, columns[2]));
+        let (pxy, pxz) = (self.negate(xy), self.negate(xz));
+        let (a, b) = (self.square(pxy), self.square(pxz));
+        let sum = self.plus(a, b);
+        let couple = self.root(sum);
+        let angle = self.out.model.graph.add(Op::Atan2(pxz, pxy));
+        for (word, kind, node) in [("couple", "moment_of_inertia", couple), ("couple_angle", "angle", angle)] {
+            let value =
+                self.built_in(format!("{owner}.unbalance.{word}"), Group::Rotor, Shown::OnRequest, kind, node, place);
+            unbalance.push((word.into(), value));
+        }
+        members.push(("unbalance".into(), Value::plain(format!("{owner}.unbalance"), "an unbalance", unbalance)));
+    }
+
+    fn central_tensor(&mut self, contributions: &[Contribution], centre: Vector) -> Option<Tensor> {
+        let mut tensors = Vec::with_capacity(2 * contributions.len());
+        for part in contributions {
+            tensors.push(part.tensor?);
+            let offset = self.between(part.centre, centre);
+            tensors.push(self.point_tensor(part.mass, offset));
+        }
+        Some(self.tensor_sum(&tensors))
+    }
+
+    fn axial_moment(&mut self, contributions: &[Contribution], axis: &Axis) -> NodeId {
+        let mut terms = Vec::with_capacity(2 * contributions.len());
+        for part in contributions {
+            terms.push(part.axial);
+            let offset = self.between(part.centre, axis.through);
+            let square = self.distance_squared(offset, axis.along);
+            terms.push(self.times(part.mass, square));
+        }
+        self.sum(&terms)
+    }
+
+    /// Moment about any axis; None where a part's cross inertia is not known.
+    pub(super) fn moment_about(&mut self, contributions: &[Contribution], axis: &Axis) -> Option<NodeId> {
+        let mut turned = Vec::with_capacity(contributions.len());
+        for part in contributions {
+            let axial = self.along(&part.tensor?, axis.along);
+            turned.push(Contribution { axial, ..part.clone() });
+        }
+        Some(self.axial_moment(&turned, axis))
+    }
+
+    #[allow(clippy::too_many_arguments)]
+    fn placement(
+        &mut self,
+        env: &mut Env,
+        item: &'s Item,
+        rotor: &Name,
+        axis: &Axis,
+        placement: &'s Placement,
+        contributions: &mut Vec<Contribution>,
+        aliases: &mut Vec<Alias>,
+    ) -> Option<()> {
+        let place = env.place(placement.part.span);
+        let part_text: SmolStr = self.sheet.sources.text(place).into();
+        let object = match self.path(env, &placement.part) {
+            Value::Object(object) if matches!(object.entity, Entity::Body(_) | Entity::Rotor(_)) => object,
+            Value::Failed => return None,
+            other => {
+                self.report(Diagnostic::new(
+                    codes::NOT_A_QUANTITY,
+                    place,
+                    format!("a rotor holds bodies and rotors, but `{part_text}` is {}", other.what()),
+                ));
+                return None;
+            }
+        };
+        let mut fields =
+            Fields::new(format!("{}.{}", rotor.text, part_text), env, place, &placement.fields, &placement.clauses);
+        fields.locals.clone_from(&env.locals);
+        let named = match self.take_expr(&mut fields, "named") {
+            Some((_, expr)) => self.word(expr).map(SmolStr::new),
+            None => None,
+        };
+        let n = self.take_count(&mut fields, "places", 1)?;
+        let circle = self.take_number(&mut fields, "circle_diameter", "diameter", Group::Rotor);
+        let radius = self.take_number(&mut fields, "radius", "radius", Group::Rotor);
+        let first = self.take_number(&mut fields, "first_at", "angle", Group::Rotor);
+        let angle = self.take_number(&mut fields, "angle", "angle", Group::Rotor);
+        let own_turn = self.own_turn(&mut fields)?;
+        self.finish(fields, env, &[]);
+        let (zero, two) = (self.num(0.0), self.num(2.0));
+        let off = match (circle, radius) {
+            (Some(circle), None) => self.over(circle.node, two),
+            (None, Some(radius)) => radius.node,
+            (None, None) => zero,
+            (Some(circle), Some(radius)) => {
+                self.report(
+                    Diagnostic::new(
+                        codes::CONFLICTING_FIELDS,
+                        radius.place,
+                        "both `radius` and `circle_diameter` say how far from the axis",
+                    )
+                    .with_label(circle.place, "and this"),
+                );
+                return None;
+            }
+        };
+        let angle = first.or(angle).map_or(zero, |typed| typed.node);
+        // Where the part's frame goes: its own turn, then along the axis, then round it.
+        let align = self.turn_x_to(axis.along);
+        let at = match &placement.at {
+            None => None,
+            Some(expr) => Some((self.expr(env, expr), env.place(expr.span))),
+        };
+        let host = match &placement.from {
+            None => None,
+            Some(from) => match aliases.iter().position(|alias| alias.name == from.text) {
+                Some(at) => Some(at),
+                None => {
+                    let known: Vec<String> = aliases.iter().map(|alias| format!("`{}`", alias.name)).collect();
+                    self.report(
+                        Diagnostic::new(
+                            codes::UNKNOWN_NAME,
+                            env.place(from.span),
+                            format!("no part of this rotor above is named `{}`", from.text),
+                        )
+                        .with_help(if known.is_empty() {
+                            "place it first".into()
+                        } else {
+                            format!("parts are {}", known.join(", "))
+                        }),
+                    );
+                    return None;
+                }
+            },
+        };
+        let (mut base, frame) = match host {
+            Some(at) => (aliases[at].origin, aliases[at].turn),
+            None => (axis.through, align),
+        };
+        match at {
+            None => {}
+            Some((Value::Number(typed), _)) => {
+                let distance = self.expect_length(&typed)?.node;
+                let step: Vector = axis.along.map(|component| self.times(distance, component));
+                base = self.shifted(base, step);
+            }
+            Some((value @ Value::Point(..), at_place)) => {
+                let components = self.three(value, at_place, "a point")?;
+                let mut nodes = [zero; 3];
+                for (slot, component) in nodes.iter_mut().zip(&components) {
+                    *slot = self.expect_length(component)?.node;
+                }
+                let point = nodes;
+                let origin = match host {
+                    Some(at) => self.shifted(aliases[at].origin, point),
+                    None => point,
+                };
+                let identity = self.identity();
+                let parts =
+                    self.part_contributions(&object, placement, host.and_then(|at| aliases[at].density), place)?;
+                for part in parts {
+                    self.add_part(contributions, part, &own_turn, &identity, origin, axis, placement.less);
+                }
+                self.alias(aliases, named.unwrap_or(part_text), origin, own_turn, &object);
+                return Some(());
+            }
+            Some((Value::Failed, _)) => return None,
+            Some((other, at_place)) => {
+                self.report(Diagnostic::new(
+                    codes::NOT_A_QUANTITY,
+                    at_place,
+                    format!("`at` takes a distance along the axis or a point, but this is {}", other.what()),
+                ));
+                return None;
+            }
+        }
+        let parts = self.part_contributions(&object, placement, host.and_then(|at| aliases[at].density), place)?;
+        for k in 0..n {
+            let angle = if n == 1 {
+                angle
+            } else {
+                let step = self.num(std::f64::consts::TAU * k as f64 / n as f64);
+                match self.known(angle) {
+                    Some(value) => self.num(value + std::f64::consts::TAU * k as f64 / n as f64),
+                    None => self.plus(angle, step),
+                }
+            };
+            let round = self.turn(0, angle);
+            let placed = self.compose(&frame, &round);
+            let out = [zero, off, zero];
+            let out = self.turned(&placed, out);
+            let origin = self.shifted(base, out);
+            for part in &parts {
+                self.add_part(contributions, part.clone(), &own_turn, &placed, origin, axis, placement.less);
+            }
+        }
+        let _ = item;
+        self.alias(aliases, named.unwrap_or(part_text), base, frame, &object);
+        Some(())
+    }
+
+    fn alias(&mut self, aliases: &mut Vec<Alias>, name: SmolStr, origin: Vector, turn: Rotation, object: &Object) {
+        let density = match &object.entity {
+            Entity::Body(body) => body.density,
+            _ => None,
+        };
+        aliases.push(Alias { name, origin, turn, density });
+    }
+
+    /// `turned = [(z, 30 deg), (x, 20 deg)]`.
+    fn own_turn(&mut self, fields: &mut Fields<'s>) -> Option<Rotation> {
+        let mut rotation = self.identity();
+        let Some((mut env, expr)) = self.take_expr(fields, "turned") else { return Some(rotation) };
+        for (at, letter) in ["x", "y", "z"].into_iter().enumerate() {
+            let node = self.num(at as f64);
+            let place = env.place(expr.span);
+            env.define(letter, Value::Number(Typed { node, ty: pintle_units::Type::number(), place }));
+        }
+        let place = env.place(expr.span);
+        let value = self.expr(&mut env, expr);
+        let turns = match value {
+            Value::Point(items, at) => vec![Value::Point(items, at)],
+            value => self.as_list(value, place, "a list of turns such as [(z, 30 deg)]")?,
+        };
+        for turn in turns {
+            let Value::Point(pair, at) = turn else { return None };
+            let [axis, angle] = <[Value; 2]>::try_from(pair).ok()?;
+            let axis = self.as_number(axis, at)?;
+            let axis = self.whole(&axis, at)?;
+            let angle = self.as_number(angle, at)?;
+            let angle = self.expect(&angle, "angle", "the turn")?;
+            let step = self.turn(usize::try_from(axis).ok()?.min(2), angle.node);
+            rotation = self.compose(&step, &rotation);
+        }
+        Some(rotation)
+    }
+
+    /// The part in its own frame, under its own mass or its host's density.
+    fn part_contributions(
+        &mut self,
+        object: &Object,
+        placement: &Placement,
+        host_density: Option<NodeId>,
+        place: Place,
+    ) -> Option<Vec<Contribution>> {
+        match &object.entity {
+            Entity::Rotor(rotor) => Some(rotor.contributions.clone()),
+            Entity::Body(body) => {
+                let body: Body = body.clone();
+                if placement.from.is_some()
+                    && let (Some(volume), Some(density)) = (body.volume, host_density)
+                {
+                    let mass = self.times(density, volume);
+                    let properties = self.properties(&body, Some(mass))?;
+                    let body = Body { properties: Some(properties), ..body };
+                    return Some(vec![self.own_contribution(&body)?]);
+                }
+                match self.own_contribution(&body) {
+                    Some(contribution) => Some(vec![contribution]),
+                    None => {
+                        self.report(
+                            Diagnostic::new(codes::MISSING_FIELD, place, format!("`{}` has no mass", object.name))
+                                .with_label(body.place, "defined here without material, density or mass")
+                                .with_help("give it a `material`, `density` or `mass`; removed material takes its host's: `less BODY from HOST`"),
+                        );
+                        None
+                    }
+                }
+            }
+            _ => None,
+        }
+    }
+
+    #[allow(clippy::too_many_arguments)]
+    fn add_part(
+        &mut self,
+        contributions: &mut Vec<Contribution>,
+        part: Contribution,
+        own_turn: &Rotation,
+        placed: &Rotation,
+        origin: Vector,
+        axis: &Axis,
+        less: bool,
+    ) {
+        let rotation = self.compose(placed, own_turn);
+        let centre = self.turned(&rotation, part.centre);
+        let centre = self.shifted(origin, centre);
+        let tensor = part.tensor.map(|tensor| self.turned_tensor(&rotation, &tensor));
+        // Turned about the axis only, the axial moment is the part's own.
+        let u = axis.along;
+        let own_axis = [rotation[0][0], rotation[1][0], rotation[2][0]];
+        let axial = match (&tensor, own_axis == u) {
+            (_, true) | (None, _) => part.axial,
+            (Some(tensor), false) => self.along(tensor, u),
+        };
+        let (mass, tensor, axial) = if less {
+            (self.negate(part.mass), tensor.map(|tensor| tensor.map(|member| self.negate(member))), self.negate(axial))
+        } else {
+            (part.mass, tensor, axial)
+        };
+        let reach = match (part.reach, less) {
+            (Some(reach), false) => {
+                let offset = self.between(centre, axis.through);
+                let square = self.distance_squared(offset, u);
+                let distance = self.root(square);
+                Some(self.plus(distance, reach))
+            }
+            _ => None,
+        };
+        contributions.push(Contribution { mass, centre, tensor, axial, reach });
+    }
+}
+
+fn node_of(value: &Value, otherwise: NodeId) -> NodeId {
+    match value {
+        Value::Number(typed) => typed.node,
+        _ => otherwise,
+    }
+}
