@@ -17,6 +17,7 @@ pub use page::Colour;
 use crate::model::{InputTolerance, InputValue, Model};
 use crate::results::{CaseResults, QuantityResult, Results};
 use crate::source::Sources;
+use pintle_graph::Op;
 use pintle_text::Diagnostic;
 use pintle_units::Unit;
 
@@ -54,7 +55,12 @@ pub(crate) struct Written {
 
 /// What the sheet says about an input that is a quantity.
 pub(crate) fn written(model: Option<&Model>, quantity: &QuantityResult) -> Written {
-    let input = model.and_then(|model| model.inputs.iter().find(|input| input.quantity == Some(quantity.id)));
+    let input = model.and_then(|model| {
+        let node = model.quantities.get(quantity.id.0 as usize)?.node;
+        let Op::Quantity(_, inner) = model.graph.op(node) else { return None };
+        let Op::Input(input) = model.graph.op(inner) else { return None };
+        model.inputs.get(input.0 as usize)
+    });
     let Some(input) = input else { return Written::default() };
     match input.value {
         InputValue::Wanted { low, high, declared } => {

@@ -619,6 +619,7 @@ impl<'s> Lowerer<'s, '_> {
         let typed = self.as_number(value, place)?;
         let typed =
             self.expect_kind(&typed, pintle_units::Kind::Energy, &format!("the line `{}`", name.text), place)?;
+        self.weight_twice(env, draft, entry, place);
         let full = format!("{}.{}", draft.name, name.text);
         let unit = self.display(env, &entry.field.clauses);
         let source = self.source(&entry.field.clauses).unwrap_or_default();
@@ -654,6 +655,24 @@ impl<'s> Lowerer<'s, '_> {
         env.define(name.text.clone(), Value::Number(typed.clone()));
         draft.members.push((name.text, Value::Number(typed)));
         Some(())
+    }
+
+    /// A load's weight already enters by its path; a line that brings it again is a slip.
+    fn weight_twice(&mut self, env: &Env, draft: &Draft, entry: &Entry, place: Place) {
+        let Some(at) = self.acts_at(draft, entry) else { return };
+        let rises = matches!(&draft.train.members[at].kind, MemberKind::Load(load) if !load.level);
+        let text: String = self.sheet.sources.text(env.place(entry.field.span)).split_whitespace().collect();
+        // With a cosine it is the force on the path, which friction follows.
+        if rises && text.contains("g_n*") && !text.contains("cos(") {
+            self.report(
+                Diagnostic::new(
+                    codes::WEIGHT_TWICE,
+                    place,
+                    format!("`{}` brings gravity in again: the path of `{}` already does", place_name(entry), draft.train.members[at].name),
+                )
+                .with_help("leave the weight to the load's path; gains and losses hold the rest"),
+            );
+        }
     }
 
     /// The member that a line's value names.
@@ -765,4 +784,8 @@ impl<'s> Lowerer<'s, '_> {
 
 fn same_case(names: &[Name], case: &[SmolStr]) -> bool {
     names.len() == case.len() && names.iter().all(|name| case.contains(&name.text))
+}
+
+fn place_name(entry: &Entry) -> &str {
+    entry.field.path.segments.first().map_or("this line", |segment| segment.name.text.as_str())
 }

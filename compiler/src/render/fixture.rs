@@ -38,11 +38,6 @@ impl Fixture {
         View { sources: &self.sources, diagnostics: &self.diagnostics, results: &self.results, models: &self.models }
     }
 
-    /// Adds a file; its index is its number.
-    pub fn add_file(&mut self, path: &str, text: &str) {
-        self.sources.add(source(path, text));
-    }
-
     pub fn report_error(&mut self) {
         const CODE: Code =
             Code { name: "unknown-name", severity: Severity::Error, summary: "a name that nothing defines" };

@@ -122,11 +122,10 @@ fn digits(value: f64, significant: usize) -> String {
 fn rounded(value: f64, significant: usize) -> String {
     let least = significant.saturating_sub(1);
     let text = format!("{value:.least$e}");
-    if significant < SHORT && text.trim_start_matches('-').starts_with('1') {
-        format!("{value:.significant$e}")
-    } else {
-        text
-    }
+    let longer = format!("{value:.significant$e}");
+    let begins_with_one = |text: &str| text.trim_start_matches('-').starts_with('1');
+    // 9999.97 rounds to 10000 and has no need of the digit that a 1 gets.
+    if significant < SHORT && begins_with_one(&text) && begins_with_one(&longer) { longer } else { text }
 }
 
 fn trimmed(text: &str) -> &str {

@@ -314,6 +314,11 @@ impl Page {
         self.out.push('\n');
     }
 
+    /// A line that fits already.
+    pub fn line(&mut self, text: &str) {
+        self.raw(&printable(text));
+    }
+
     /// An empty line, unless one stands there already.
     pub fn blank(&mut self) {
         if !self.out.is_empty() && !self.out.ends_with("\n\n") {

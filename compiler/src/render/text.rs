@@ -1,9 +1,9 @@
 //! The printed sheet of `solve`: 80 columns, the verdict first.
 
-mod account;
+pub(crate) mod account;
 mod cases;
-mod limits;
-mod tables;
+pub(crate) mod limits;
+pub(crate) mod tables;
 
 use super::page::{Colour, Page, Paint};
 use super::verdicts::{self, Count};

@@ -7,7 +7,7 @@ use crate::results::{CaseResults, ConfirmResult, LimitResult, Verdict, Worst};
 
 /// Whether the reasons of limits are printed below them.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Reasons {
+pub(crate) enum Reasons {
     /// They are.
     Shown,
     /// They stand with the sheet as it is already.
@@ -79,7 +79,7 @@ impl Row {
 }
 
 /// What stands below a limit.
-fn notes(limit: &LimitResult, reasons: Reasons) -> Vec<String> {
+pub(crate) fn notes(limit: &LimitResult, reasons: Reasons) -> Vec<String> {
     let mut notes = Vec::new();
     if limit.verdict == Verdict::MetAtNominalOnly {
         notes.push(match limit.worst {
