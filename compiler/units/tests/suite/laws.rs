@@ -98,20 +98,3 @@ fn the_list_is_as_long_as_promised() {
     assert!(accepted >= 60 && list.len() - accepted >= 60, "{accepted} of {}", list.len());
 }
 
-/// Prints every refusal: `cargo test -p pintle-units -- --ignored --nocapture`.
-#[test]
-#[ignore = "prints for reading"]
-fn print_refusals() {
-    for law in laws() {
-        if let Err(e) = judge(&law) {
-            println!(
-                "{}: {}\n  {:?} {e}\n  help: {}\n  fix: {:?}",
-                law.line,
-                law.expression,
-                e.code,
-                e.help.as_deref().unwrap_or_default(),
-                e.fix
-            );
-        }
-    }
-}
