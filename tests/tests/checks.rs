@@ -32,9 +32,15 @@ fn check_case(case: &Value) -> (Vec<String>, usize) {
     let mut faults = Vec::new();
     let mut checked = 0;
     if expect.contains_key("reject") {
-        checked += 1;
+        checked += 2;
         if solved.exit_code() != 2 {
             faults.push(format!("{id}: accepted, exit code {}", solved.exit_code()));
+        }
+        // Refused for the engineer's reason and for nothing else, such as a slip of the sheet.
+        let reasons = ["unit-mismatch", "kind-mismatch", "bad-mesh"];
+        let errors: Vec<_> = solved.diagnostics().into_iter().filter(|it| it.severity == "error").collect();
+        if errors.len() != 1 || errors.iter().any(|it| !reasons.contains(&it.code)) {
+            faults.push(format!("{id}: refused for {errors:?}"));
         }
         return (faults, checked);
     }
