@@ -32,14 +32,14 @@ impl Random {
     }
 
     /// A number in 0..1.
-    pub fn next(&mut self) -> f64 {
+    pub fn unit(&mut self) -> f64 {
         self.0 = self.0.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
         (self.0 >> 11) as f64 / (1u64 << 53) as f64
     }
 
     /// A whole number between `low` and `high`, both included.
     pub fn between(&mut self, low: u32, high: u32) -> u32 {
-        low + ((self.next() * f64::from(high - low + 1)) as u32).min(high - low)
+        low + ((self.unit() * f64::from(high - low + 1)) as u32).min(high - low)
     }
 }
 
@@ -190,14 +190,14 @@ fn winch(out: &mut Generated, random: &mut Random, k: usize) {
     line!(out, "limit pull_{k} <= {} N because \"winch plate\"", (pull * 1.2).ceil());
     out.met += 1;
     let rpm = speed * 30.0 / PI;
-    if random.next() < 0.5 {
+    if random.unit() < 0.5 {
         line!(out, "limit runaway_{k}.drum_{k}.speed <= {} rpm because \"type test\"", (rpm * 1.1).ceil());
         out.met += 1;
     } else {
         line!(out, "limit runaway_{k}.drum_{k}.speed <= {} rpm because \"type test\"", (rpm * 0.7).floor());
         out.not_met += 1;
     }
-    if k % 4 == 0 {
+    if k.is_multiple_of(4) {
         wheel(out, random, k);
     }
     line!(out, "");

@@ -130,26 +130,30 @@ fn read(graph: &Graph, left: NodeId, right: NodeId) -> Option<Sum> {
     at(left).zip(at(right)).and_then(|(left, right)| plus(left, right, -1.0))
 }
 
-/// How often the coefficients of `left - right` change sign, if it is a sum of
-/// powers of input 0 and rounding leaves no coefficient's sign in doubt. For
-/// positive values of the input there are no more roots than that.
+/// How often, at most, the coefficients of `left - right` change sign, if it is
+/// a sum of powers of input 0. A coefficient that rounding leaves in doubt is
+/// taken with the sign that makes most changes. For positive values of the
+/// input there are no more roots than that.
 pub(crate) fn sign_changes(graph: &Graph, left: NodeId, right: NodeId) -> Option<usize> {
     const CLEAR: f64 = 1e-9;
     let terms = read(graph, left, right)?;
-    let mut changes = 0;
-    let mut last = 0.0_f64;
+    // Most changes so far if the last sign was plus, and if it was minus.
+    let (mut plus, mut minus): (Option<usize>, Option<usize>) = (None, None);
     for term in terms.iter().filter(|term| term.size != 0.0) {
-        // NaN is in doubt as well.
-        let clear = term.coefficient.abs() > CLEAR * term.size && term.size.is_finite();
-        if !clear {
+        if !term.coefficient.is_finite() || !term.size.is_finite() {
             return None;
         }
-        if last * term.coefficient.signum() < 0.0 {
-            changes += 1;
+        let after = |same: Option<usize>, other: Option<usize>| same.max(other.map(|count| count + 1)).or(Some(0));
+        let (to_plus, to_minus) = (after(plus, minus), after(minus, plus));
+        if term.coefficient.abs() <= CLEAR * term.size {
+            (plus, minus) = (to_plus, to_minus);
+        } else if term.coefficient > 0.0 {
+            (plus, minus) = (to_plus, None);
+        } else {
+            (plus, minus) = (None, to_minus);
         }
-        last = term.coefficient.signum();
     }
-    Some(changes)
+    Some(plus.max(minus).unwrap_or(0))
 }
 
 #[cfg(test)]
@@ -207,16 +211,31 @@ mod tests {
     }
 
     #[test]
-    fn doubt_and_other_functions_are_none() {
-        check(None, |graph, x| {
+    fn doubt_counts_as_the_worse_sign() {
+        // 0.2 x^2 - 0.1 x^2 - 0.1 x^2 may be anything about zero; between minus and plus it changes nothing.
+        let doubtful = |graph: &mut Graph, x: NodeId| {
             let fifth = graph.number(0.2, "0.2");
             let tenth = graph.number(0.1, "0.1");
             let square = graph.add(Op::Power(x, 2, 1));
             let a = graph.add(Op::Multiply(fifth, square));
             let b = graph.add(Op::Multiply(tenth, square));
             let b = graph.add(Op::Add(b, b));
-            (graph.add(Op::Subtract(a, b)), graph.number(1.0, "1"))
+            graph.add(Op::Subtract(a, b))
+        };
+        check(Some(1), |graph, x| {
+            let doubtful = doubtful(graph, x);
+            let fourth = graph.add(Op::Power(x, 4, 1));
+            (graph.add(Op::Add(doubtful, fourth)), graph.number(1.0, "1"))
         });
+        check(Some(2), |graph, x| {
+            let doubtful = doubtful(graph, x);
+            let fourth = graph.add(Op::Power(x, 4, 1));
+            (graph.add(Op::Add(doubtful, fourth)), graph.number(-1.0, "-1"))
+        });
+    }
+
+    #[test]
+    fn other_functions_and_no_numbers_are_none() {
         check(None, |graph, x| (graph.add(Op::Apply(Function::Exp, x)), x));
         check(None, |graph, x| (x, graph.number(f64::NAN, "?")));
     }

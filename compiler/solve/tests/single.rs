@@ -314,3 +314,40 @@ fn slipping_winch_to_the_edge_of_the_range() {
         (sum, s.number(1.85 * (root * root) + 0.004 * (root * root * root)))
     });
 }
+
+#[test]
+fn flywheel_with_a_bore_has_its_diameter() {
+    // J = rho pi/32 b (D^4 - d^4), written through the mass, as shapes are.
+    let (bore, planted): (f64, f64) = (0.06, 0.72);
+    let inertia = 46.2 * (planted * planted - bore * bore) * (planted * planted + bore * bore);
+    check((0.1, 1.5), &[planted], |s, x| {
+        let square = s.power(x, 2);
+        let bore = s.number(bore);
+        let bore = s.power(bore, 2);
+        let (difference, sum) = (s.subtract(square, bore), s.add(square, bore));
+        let factor = s.number(46.2);
+        let mass = s.multiply(factor, difference);
+        (s.multiply(mass, sum), s.number(inertia))
+    });
+}
+
+#[test]
+fn the_law_of_the_loss_changes_with_the_flow() {
+    // 1/2 J w^2 + loss(1/2 J w^2 - W) = E with the loss 5 % or 10 % of what crosses.
+    for energy in [50.0, 150.0] {
+        let outcome = outcome((0.0, 1e4), |s, x| {
+            let half = s.number(0.5);
+            let square = s.power(x, 2);
+            let kinetic = s.multiply(half, square);
+            let work = s.number(100.0);
+            let crossing = s.subtract(kinetic, work);
+            let (a, b) = (s.number(0.05), s.number(-0.1));
+            let (a, b) = (s.multiply(a, crossing), s.multiply(b, crossing));
+            let loss = s.graph.add(Op::Max(a, b));
+            (s.add(kinetic, loss), s.number(energy))
+        });
+        // By hand: k + 0.1 (100 - k) = E below k = 100, k + 0.05 (k - 100) = E above.
+        let kinetic: f64 = if energy < 100.0 { (energy - 10.0) / 0.9 } else { (energy + 5.0) / 1.05 };
+        check_outcome(&outcome, &Expect::Roots(vec![(2.0 * kinetic).sqrt()]), 1e-14);
+    }
+}

@@ -530,9 +530,11 @@ impl<'s> Lowerer<'s, '_> {
             return Some(value);
         }
         let model = &self.out.model;
-        let value = pintle_graph::value_with(&model.graph, node, |input| match model.input(input).value {
-            crate::model::InputValue::Given { nominal, .. } => nominal,
-            crate::model::InputValue::Wanted { .. } => f64::NAN,
+        let value = pintle_graph::value_with(&model.graph, node, |input| {
+            match model.inputs.get(input.0 as usize).map(|it| &it.value) {
+                Some(&crate::model::InputValue::Given { nominal, .. }) => nominal,
+                _ => f64::NAN,
+            }
         });
         value.is_finite().then_some(value)
     }

@@ -58,8 +58,11 @@ impl<'s> Lowerer<'s, '_> {
     {
         fields.taken.push(name.into());
         let own = fields.fields.iter().find(|field| is_named(field, name)).map(|field| (fields.item, field));
-        let full = format!("{}.{name}", fields.owner);
-        let (item, field) = self.overridden(&full, own)?;
+        let (item, field) = if self.overrides.fields.is_empty() {
+            own?
+        } else {
+            self.overridden(&format!("{}.{name}", fields.owner), own)?
+        };
         let mut env = self.env(item);
         env.locals.clone_from(&fields.locals);
         Some((env, field))

@@ -668,7 +668,11 @@ impl<'s> Lowerer<'s, '_> {
                 Diagnostic::new(
                     codes::WEIGHT_TWICE,
                     place,
-                    format!("`{}` brings gravity in again: the path of `{}` already does", place_name(entry), draft.train.members[at].name),
+                    format!(
+                        "`{}` brings gravity in again: the path of `{}` already does",
+                        place_name(entry),
+                        draft.train.members[at].name
+                    ),
                 )
                 .with_help("leave the weight to the load's path; gains and losses hold the rest"),
             );

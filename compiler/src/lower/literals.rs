@@ -99,15 +99,16 @@ impl<'s> Lowerer<'s, '_> {
             None => Type::number(),
         };
         let minus = if negative { "-" } else { "" };
-        let text = match &literal.unit {
-            Some(unit) => format!("{minus}{} {}", literal.number, unit.text),
-            None => format!("{minus}{}", literal.number),
+        let text: SmolStr = match &literal.unit {
+            Some(unit) => format!("{minus}{} {}", literal.number, unit.text).into(),
+            None if negative => format!("{minus}{}", literal.number).into(),
+            None => literal.number.clone(),
         };
         let tolerance = match &literal.tolerance {
             Some(tolerance) => self.tolerance(env, tolerance, value, si, unit.as_ref(), literal)?,
             None => None,
         };
-        Some(Read { si, unit, ty, tolerance, text: text.into() })
+        Some(Read { si, unit, ty, tolerance, text })
     }
 
     /// The tolerance in SI. Outer None: reported; inner None: none to carry.

@@ -5,6 +5,7 @@
 //! `confusion`. This module must never know values or sheets.
 
 use std::fmt;
+use std::sync::OnceLock;
 
 use crate::dimension::Dimension;
 pub use crate::kind_table::Kind;
@@ -111,9 +112,15 @@ impl Kind {
 
     /// The unit that it is shown in by default.
     pub fn display_unit(self) -> Unit {
-        let mut unit = unit::parse(self.def().unit, &|_| None).unwrap_or_else(|_| Unit::coherent(self.dimension()));
-        unit.kind = Some(self);
-        unit
+        // Every quantity of a sheet asks: each kind's unit text is read once.
+        static READ: OnceLock<Vec<OnceLock<Unit>>> = OnceLock::new();
+        let read = || {
+            let mut unit = unit::parse(self.def().unit, &|_| None).unwrap_or_else(|_| Unit::coherent(self.dimension()));
+            unit.kind = Some(self);
+            unit
+        };
+        let slots = READ.get_or_init(|| Kind::all().iter().map(|_| OnceLock::new()).collect());
+        slots.get(self as usize).map_or_else(read, |slot| slot.get_or_init(read).clone())
     }
 
     /// What a length of this kind does in formulas; `None` where it is no length.

@@ -97,4 +97,3 @@ fn the_list_is_as_long_as_promised() {
     let accepted = list.iter().filter(|law| law.accept).count();
     assert!(accepted >= 60 && list.len() - accepted >= 60, "{accepted} of {}", list.len());
 }
-
