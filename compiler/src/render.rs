@@ -5,8 +5,13 @@
 //! does not appear. It knows terminals and formats, and must never know how a
 //! sheet is compiled.
 
+pub mod csv;
+pub mod diagnostics;
+pub mod explain;
 #[cfg(test)]
 pub(crate) mod fixture;
+pub mod json;
+pub mod list;
 pub mod number;
 pub mod page;
 pub mod text;

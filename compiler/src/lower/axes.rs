@@ -139,7 +139,8 @@ impl<'s> Lowerer<'s, '_> {
                     None
                 }),
             },
-            Value::Failed => None,
+            // x, y and z stay axes even where an item of that name failed.
+            Value::Failed => self.coordinate_axis(&name.text),
             other => self.coordinate_axis(&name.text).or_else(|| {
                 self.not_an_axis(env.place(name.span), &name.text, &other.what());
                 None

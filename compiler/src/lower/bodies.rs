@@ -6,7 +6,6 @@ use super::space::{Arithmetic, Tensor, Vector};
 use super::value::{Entity, Object, Typed, Value};
 use super::{Env, Lowerer};
 use crate::codes;
-use crate::nearest::did_you_mean;
 use crate::results::{Group, Shown};
 use pintle_graph::NodeId;
 use pintle_syntax::ast::{Field, Item, ItemKind, Name, Path};
@@ -423,8 +422,8 @@ impl<'s> Lowerer<'s, '_> {
                     format!("`{}`, a {}, does not state its `{word}`", fields.owner, shape_name.text),
                 )
                 .with_help(format!("add `{word} = ...` ({})", kind.replace('_', " ")));
-                if let Some(hint) = did_you_mean(word, fields.names()) {
-                    diagnostic.help = Some(format!("add `{word} = ...` ({}); {hint}", kind.replace('_', " ")));
+                if let Some(near) = crate::nearest::nearest(word, fields.names()).first() {
+                    diagnostic.help = Some(format!("is `{near}` meant to be `{word}` ({})?", kind.replace('_', " ")));
                 }
                 self.report(diagnostic);
                 None

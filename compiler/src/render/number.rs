@@ -163,7 +163,7 @@ mod tests {
     #[test]
     fn fractions_are_rounded_to_five_digits_and_six_behind_a_one() {
         check_engineering(0.1 + 0.2, "0.3");
-        check_engineering(3.14159265, "3.1416");
+        check_engineering(2.718_459_26, "2.7185");
         check_engineering(1.23456789, "1.23457");
         check_engineering(9.80665, "9.80665");
         check_engineering(9.806_651_23, "9.8067");

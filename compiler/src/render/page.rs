@@ -261,9 +261,11 @@ impl Table {
             let text = row.get(last).map_or("", String::as_str);
             let hang = self.indent + widths.first().copied().unwrap_or(0) + 2;
             let free = WIDTH.saturating_sub(used);
+            // A column of texts is laid out in one way for all rows.
+            let beside = self.columns.get(last) == Some(&Align::Left) && free >= LEAST_TEXT;
             if text.trim().is_empty() {
                 page.raw(line.trim_end());
-            } else if width(text) <= free || (free >= LEAST_TEXT && self.columns.get(last) == Some(&Align::Left)) {
+            } else if width(text) <= free || beside {
                 // Padding in front of a number is part of its alignment; text is wrapped.
                 let parts = if width(text) <= free { vec![text.to_string()] } else { wrap(text, free) };
                 for (n, part) in parts.iter().enumerate() {
@@ -427,5 +429,31 @@ mod tests {
         let mut page = Page::new(Colour::On);
         table.write(&mut page);
         assert_eq!(page.text(), "\u{1b}[32mmet\u{1b}[0m        x\nundecided  y\n");
+    }
+
+    proptest::proptest! {
+        #[test]
+        fn no_table_runs_over_the_edge(
+            rows in proptest::collection::vec(
+                ("[a-z_.]{0,50}", "-?[0-9]{1,9}(\\.[0-9]{1,6})?", "[a-z*/^]{0,16}", "([a-z重]{1,9} ){0,20}"), 1..8),
+        ) {
+            let mut table = Table::new(2, &[Align::Left, Align::Point, Align::Left, Align::Left]);
+            for (name, number, unit, text) in &rows {
+                table.row(vec![name.into(), number.into(), unit.into(), text.into()]);
+                table.note(text);
+            }
+            let mut page = Page::new(Colour::Off);
+            table.write(&mut page);
+            let text = page.text();
+            for line in text.lines() {
+                proptest::prop_assert!(width(line) <= WIDTH, "{}", line);
+            }
+            // Nothing is lost: all words stand there in order.
+            for (name, number, unit, words) in &rows {
+                for part in [name, number, unit].into_iter().map(String::as_str).chain(words.split_whitespace()) {
+                    proptest::prop_assert!(part.len() > 30 || text.contains(part), "{} lacks {}", text, part);
+                }
+            }
+        }
     }
 }

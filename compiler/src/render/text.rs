@@ -97,10 +97,19 @@ fn verdict_lines(page: &mut Page, view: &View<'_>) {
     let results = view.results;
     let errors = verdicts::n_reported(view, Severity::Error);
     if errors > 0 {
-        let words = if errors == 1 { "1 error".into() } else { format!("{errors} errors") };
-        page.text_block(0, 2, &format!("{words}: what depends on it is missing below"), Paint::Bad);
+        let words = if errors == 1 {
+            "1 error: what depends on it is missing below".into()
+        } else {
+            format!("{errors} errors: what depends on them is missing below")
+        };
+        page.text_block(0, 2, &words, Paint::Bad);
     }
-    case_verdicts(page, 0, "", &results.base);
+    // A limit with an error in it is in no result: it must not seem that there is none.
+    if errors > 0 && results.base.limits.is_empty() {
+        page.text_block(0, 2, verdicts::NONE_JUDGED, Paint::Plain);
+    } else {
+        case_verdicts(page, 0, "", &results.base);
+    }
     for case in &results.cases {
         let name = case.case.as_deref().unwrap_or_default();
         case_verdicts(page, 2, &format!("under {name}: "), case);

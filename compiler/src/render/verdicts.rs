@@ -5,6 +5,9 @@ use super::View;
 use crate::results::{CaseResults, Status, Verdict};
 use pintle_text::Severity;
 
+/// Instead of a count where errors may have kept limits from being read.
+pub const NONE_JUDGED: &str = "no limit is judged";
+
 /// How many limits have which verdict, in one case.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub struct Count {

@@ -1,7 +1,9 @@
 //! What a quantity rests on: its formula's names, theirs, and so on, each once.
 
+use super::named;
 use crate::model::{InputValue, Model};
 use crate::render::View;
+use crate::render::text::account::LINES;
 use crate::results::{CaseResults, Group};
 use pintle_graph::{NodeId, Op, QuantityId};
 use std::collections::HashSet;
@@ -71,7 +73,11 @@ impl<'a> Chain<'a> {
         if self.is_unknown(id) {
             return match self.problem(id) {
                 Some(ledger) => self.of_ledger(&ledger),
-                None => self.named_in(self.item_text(id), None).into_iter().filter(|&other| other != id).collect(),
+                None => self
+                    .known(named::in_item(self.item_text(id)), None)
+                    .into_iter()
+                    .filter(|&other| other != id)
+                    .collect(),
             };
         }
         let mut found = Vec::new();
@@ -116,33 +122,37 @@ impl<'a> Chain<'a> {
         self.base.ledgers.iter().find(owner).map(|it| it.name.clone())
     }
 
-    /// The quantities that a ledger's balance is made of.
+    /// The quantities that are the lines of a ledger's account, and the names that its text holds.
     pub fn of_ledger(&self, name: &str) -> Vec<QuantityId> {
-        let Some(model) = self.model else { return Vec::new() };
-        let prefix = format!("{name}.");
+        let (Some(model), Some(ledger)) = (self.model, self.base.ledgers.iter().find(|it| it.name == name)) else {
+            return Vec::new();
+        };
         let mut found: Vec<QuantityId> = Vec::new();
-        for (at, it) in model.quantities.iter().enumerate() {
-            if it.name.starts_with(&prefix) {
-                found.push(QuantityId(at as u32));
-            }
+        for line in &ledger.lines {
+            let own = format!("{name}.{}", line.name);
+            let members = LINES.iter().filter_map(|member| model.named(&format!("{own}.{member}")));
+            let ids: Vec<QuantityId> = model.named(&own).into_iter().chain(members).collect();
+            found.extend(ids.into_iter().filter(|id| self.leaf(*id).is_none()));
         }
-        if let Some(first) = found.first().copied() {
-            for id in self.named_in(self.item_text(first), Some(name)) {
-                if !found.contains(&id) {
-                    found.push(id);
-                }
-            }
-        }
+        let text = self.view.sources.text(self.view.sources.item_place(ledger.place.item));
+        found.extend(self.known(named::in_item(text), Some(name)));
+        let mut seen = HashSet::new();
+        found.retain(|id| seen.insert(*id));
         found
     }
 
-    /// The quantities named in a text of the sheet; inside a ledger its own names first.
-    pub fn named_in(&self, text: &str, ledger: Option<&str>) -> Vec<QuantityId> {
+    /// The quantities that a condition names.
+    pub fn of_condition(&self, text: &str) -> Vec<QuantityId> {
+        self.known(named::in_condition(text), None)
+    }
+
+    /// The quantities of these names; inside a ledger its own names first.
+    fn known(&self, names: Vec<String>, ledger: Option<&str>) -> Vec<QuantityId> {
         let Some(model) = self.model else { return Vec::new() };
         let mut found = Vec::new();
-        for name in names(text) {
+        for name in names {
             let own = ledger.and_then(|ledger| model.named(&format!("{ledger}.{name}")));
-            if let Some(id) = own.or_else(|| model.named(name)).filter(|id| !found.contains(id)) {
+            if let Some(id) = own.or_else(|| model.named(&name)).filter(|id| !found.contains(id)) {
                 found.push(id);
             }
         }
@@ -166,14 +176,11 @@ impl<'a> Chain<'a> {
                 let line = self.base.ledgers.iter().find(|it| it.name == name).map_or(0, |it| it.line);
                 vec![format!("so that the ledger `{name}` closes (line {line})")]
             }
-            None => vec![format!("as the sheet says: {}", self.item_text(id).split_whitespace().collect::<Vec<_>>().join(" "))],
+            None => vec![format!(
+                "as the sheet says: {}",
+                self.item_text(id).split_whitespace().collect::<Vec<_>>().join(" ")
+            )],
         }
-    }
-
-    /// The source of a quantity that is in no result.
-    pub fn source(&self, id: QuantityId) -> String {
-        let quantity = self.model.and_then(|model| model.quantities.get(id.0 as usize));
-        quantity.map_or(String::new(), |it| it.source.to_string())
     }
 
     /// Names of the quantities whose formula names `id`.
@@ -186,7 +193,8 @@ impl<'a> Chain<'a> {
             let node = NodeId(index as u32);
             let mut reaches = false;
             if !matches!(op, Op::Quantity(..)) {
-                let operand_reaches = |operand: NodeId| Some(operand) == wanted || through.get(operand.index()) == Some(&true);
+                let operand_reaches =
+                    |operand: NodeId| Some(operand) == wanted || through.get(operand.index()) == Some(&true);
                 model.graph.operands(node, |operand| reaches |= operand_reaches(operand));
             }
             through.push(reaches);
@@ -198,13 +206,4 @@ impl<'a> Chain<'a> {
         let quantities = model.quantities.iter().enumerate();
         quantities.filter(|(at, it)| uses(*at) && it.group != Group::Given).map(|(_, it)| it.name.to_string()).collect()
     }
-}
-
-/// The dotted names in a text of the sheet.
-pub(super) fn names(text: &str) -> Vec<&str> {
-    let part = |c: char| c.is_alphanumeric() || matches!(c, '_' | '.' | '[' | ']');
-    text.split(|c: char| !part(c))
-        .map(|word| word.trim_matches('.'))
-        .filter(|word| word.starts_with(|c: char| c.is_alphabetic() || c == '_'))
-        .collect()
 }

@@ -1,19 +1,85 @@
 //! Ledgers as accounts: what is there at the start and put in on one side, what
 //! is there at the end and lost on the other.
 
-use crate::render::number;
-use crate::render::page::{Align, Page, Paint, Table};
-use crate::results::{CaseResults, LedgerEntry, LedgerResult, Side};
+use super::tables::value;
+use crate::render::page::{Align, Cell, Page, Paint, Table};
+use crate::render::{Written, number, unit_text};
+use crate::results::{CaseResults, Group, LedgerEntry, LedgerResult, QuantityResult, Side};
 
 pub(super) fn ledgers(page: &mut Page, case: &CaseResults) {
     if case.ledgers.is_empty() {
         return;
     }
     page.heading("LEDGERS");
-    for ledger in &case.ledgers {
+    for (at, ledger) in case.ledgers.iter().enumerate() {
+        if at > 0 {
+            page.blank();
+        }
         account(page, ledger);
+        states(page, ledger, case);
     }
 }
+
+/// Speed and way of every member at the end, beside the account.
+const STATES: [&str; 4] = ["speed", "angle", "travel", "rim_speed"];
+
+fn states(page: &mut Page, ledger: &LedgerResult, case: &CaseResults) {
+    let mut members: Vec<&str> = Vec::new();
+    for line in &ledger.lines {
+        if !members.contains(&line.name.as_str()) {
+            members.push(&line.name);
+        }
+    }
+    let mut table =
+        Table::new(4, &[Align::Left, Align::Point, Align::Left, Align::Point, Align::Left, Align::Point, Align::Left]);
+    let mut rows: Vec<(&str, [Option<&QuantityResult>; 3])> = Vec::new();
+    for member in members {
+        let state =
+            |name: &str| case.quantity(&format!("{}.{member}.{name}", ledger.name)).filter(|it| it.si.is_some());
+        let [speed, angle, travel, rim_speed] = STATES.map(state);
+        let way = angle.or(travel);
+        if speed.is_none() && way.is_none() {
+            continue;
+        }
+        rows.push((member, [speed, way, rim_speed]));
+    }
+    if rows.is_empty() {
+        return;
+    }
+    let mut head: Vec<Cell> = vec!["at the end".into()];
+    for (column, name) in ["speed", "way", "rim speed"].into_iter().enumerate() {
+        let is_used = rows.iter().any(|(_, states)| states.get(column).is_some_and(Option::is_some));
+        head.extend([if is_used { name } else { "" }, ""].map(Cell::from));
+    }
+    table.row(head);
+    for (member, states) in rows {
+        let mut row: Vec<Cell> = vec![member.into()];
+        for it in states {
+            row.push(it.map_or(String::new(), |it| value(it, &Written::default())).into());
+            row.push(it.map_or("", |it| unit_text(&it.unit)).into());
+        }
+        table.row(row);
+    }
+    table.write(page);
+}
+
+/// Whether a quantity stands with its ledger already: a line, or the state of a member.
+pub(super) fn stands_in_ledger(case: &CaseResults, it: &QuantityResult) -> bool {
+    it.group == Group::Ledger
+        && case.ledgers.iter().any(|ledger| {
+            let rest = it.name.strip_prefix(ledger.name.as_str()).and_then(|rest| rest.strip_prefix('.'));
+            rest.is_some_and(|rest| ledger.lines.iter().any(|line| is_of(line, rest)))
+        })
+}
+
+fn is_of(line: &LedgerEntry, name: &str) -> bool {
+    let Some(rest) = name.strip_prefix(line.name.as_str()) else { return false };
+    let member = rest.strip_prefix('.').unwrap_or("");
+    rest.is_empty() || LINES.contains(&member) || STATES.contains(&member)
+}
+
+/// Behind the name of a member or link: the quantities that are lines of the account.
+pub(crate) const LINES: [&str; 4] = ["kinetic", "height", "spring", "loss"];
 
 /// One account.
 pub(crate) fn account(page: &mut Page, ledger: &LedgerResult) {
@@ -80,6 +146,9 @@ impl Entry {
                 let lowest = from.min(to);
                 Entry { left: Some(from - lowest), right: Some(to - lowest) }
             }
+            (Side::Height, None, Some(change)) => {
+                Entry { left: Some((-change).max(0.0)), right: Some(change.max(0.0)) }
+            }
             (_, Some((from, to)), _) => Entry { left: Some(from), right: Some(to) },
             (Side::Gain, None, si) => Entry { left: si, right: None },
             (_, None, si) => Entry { left: None, right: si },
@@ -92,6 +161,7 @@ struct Scale {
     unit: &'static str,
     factor: f64,
     decimals: usize,
+    largest: f64,
 }
 
 impl Scale {
@@ -105,12 +175,13 @@ impl Scale {
         };
         let shown = largest / factor;
         let before = if shown >= 1.0 { (libm::log10(shown) as usize) + 1 } else { 1 };
-        Scale { unit, factor, decimals: 5_usize.saturating_sub(before) }
+        Scale { unit, factor, decimals: 5_usize.saturating_sub(before), largest }
     }
 
     fn cell(&self, value: Option<f64>) -> String {
         let Some(value) = value else { return String::new() };
-        let value = value / self.factor;
+        // A sum of which only rounding is left is nothing.
+        let value = if value.abs() < 1e-12 * self.largest { 0.0 } else { value / self.factor };
         let text = format!("{:.*}", self.decimals, value + 0.0);
         // A line that is there must not read as nothing.
         let nothing = text.chars().all(|c| matches!(c, '0' | '.' | '-'));
@@ -150,5 +221,7 @@ mod tests {
         let line =
             LedgerEntry { name: "load".into(), side: Side::Height, si: Some(-500.0), from_to: Some((0.0, -500.0)) };
         assert_eq!(Entry::of(&line), Entry { left: Some(500.0), right: Some(0.0) });
+        let rises = LedgerEntry { si: Some(500.0), from_to: None, ..line };
+        assert_eq!(Entry::of(&rises), Entry { left: Some(0.0), right: Some(500.0) });
     }
 }

@@ -23,10 +23,18 @@ pub(super) fn limits(page: &mut Page, case: &CaseResults, reasons: Reasons) {
     }
     let rows: Vec<Row> = case.limits.iter().map(Row::of).collect();
     // The condition takes what the numbers leave.
-    let most = |text: fn(&Row) -> &str| rows.iter().map(|row| width(text(row))).max().unwrap_or(0);
-    let numbers = most(|it| &it.value) + most(|it| &it.bound) + most(|it| &it.unit) + most(|it| &it.margin);
-    // A column that aligns at the point can be wider than its widest number.
-    let room = WIDTH.saturating_sub(2 + 9 + 5 * 2 + numbers + 6).clamp(16, 44);
+    let verdicts = case.limits.iter().map(|limit| width(short(limit.verdict))).max().unwrap_or(0);
+    let most = |head: &str, text: fn(&Row) -> &str| {
+        rows.iter().map(|row| width(text(row))).max().unwrap_or(0).max(width(head))
+    };
+    let at_point = |head: &str, text: fn(&Row) -> &str| {
+        let before = rows.iter().map(|row| width(number::halves(text(row)).0)).max().unwrap_or(0);
+        let behind = rows.iter().map(|row| width(number::halves(text(row)).1)).max().unwrap_or(0);
+        (before + behind).max(width(head))
+    };
+    let numbers = at_point("value", |it| &it.value) + at_point("bound", |it| &it.bound);
+    let words = verdicts + most("", |it| &it.unit) + most("margin", |it| &it.margin);
+    let room = WIDTH.saturating_sub(2 + 5 * 2 + numbers + words).max(16);
     let mut table = Table::new(2, &[Align::Left, Align::Left, Align::Point, Align::Point, Align::Left, Align::Right]);
     table.row(["", "", "value", "bound", "", "margin"].map(Cell::from).to_vec());
     for (row, limit) in rows.iter().zip(&case.limits) {

@@ -1,5 +1,6 @@
 //! Givens, assumptions and results of the sheet as it stands.
 
+use super::account;
 use crate::model::{InputTolerance, Model};
 use crate::render::page::{Align, Cell, Page, Paint, Table};
 use crate::render::{Written, number, shown, unit_text, with_unit, written};
@@ -95,7 +96,7 @@ pub(super) fn results(page: &mut Page, case: &CaseResults, model: Option<&Model>
         let rows = case
             .quantities
             .iter()
-            .filter(|it| it.group == group && it.shown == Shown::Always && !is_account_line(case, it));
+            .filter(|it| it.group == group && it.shown == Shown::Always && !account::stands_in_ledger(case, it));
         values(page, heading, rows, model);
     }
     let found = case.quantities.iter().filter(|it| it.group == Group::Wanted || searched(model, it));
@@ -104,20 +105,6 @@ pub(super) fn results(page: &mut Page, case: &CaseResults, model: Option<&Model>
 
 fn searched(model: Option<&Model>, it: &QuantityResult) -> bool {
     it.group != Group::Ledger && written(model, it).range.is_some()
-}
-
-/// Lines of a ledger stand in its account already.
-fn is_account_line(case: &CaseResults, it: &QuantityResult) -> bool {
-    it.group == Group::Ledger
-        && case.ledgers.iter().any(|ledger| {
-            let Some(rest) = it.name.strip_prefix(ledger.name.as_str()).and_then(|rest| rest.strip_prefix('.')) else {
-                return false;
-            };
-            ledger.lines.iter().any(|line| {
-                rest == line.name
-                    || rest.strip_prefix(line.name.as_str()).is_some_and(|tail| [".loss", ".kinetic"].contains(&tail))
-            })
-        })
 }
 
 /// One row a body or rotor: mass, moment of inertia, centre of mass.
