@@ -172,12 +172,11 @@ impl Snapshot {
         let path = text.get(start..end)?;
         let results = &compilation.results.base;
         let model = compilation.models.first()?;
+        let source = compilation.sources.files().first()?;
+        // The text may be newer than its results: items are looked for where they are now.
+        let syntax = if *source.text == *text { source.syntax.clone() } else { Arc::new(pintle_syntax::parse(text)) };
         // Inside a problem a state is written without its prefix: try the item's name in front.
-        let owner = compilation
-            .sources
-            .files()
-            .first()?
-            .syntax
+        let owner = syntax
             .items
             .iter()
             .find(|item| item.offset as usize <= start && start <= (item.offset + item.len) as usize)

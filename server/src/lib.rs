@@ -1,26 +1,36 @@
 //! The language server: the protocol, and nothing else.
 //!
-//! Handlers turn parameters into messages and wait for an answer. One thread
-//! owns the documents and answers from the newest text; one thread analyses,
-//! newest text first, and publishes only what still belongs to it. All that is
-//! known about sheets comes from `pintle::analysis`, in byte offsets.
+//! A reader thread cuts the input into messages; one loop hands them to the
+//! handlers and collects the answers; handlers turn parameters into messages
+//! for the state thread and wait. The state thread owns the documents, answers
+//! questions and decides what is published; the analysis thread compiles, the
+//! newest text first. All that is known about sheets comes from
+//! `pintle::analysis`, in byte offsets; it must never know a unit or a law.
+//!
+//! ```text
+//! input -> frames -> incoming -> serve -> handlers -> state <-> analyst
+//!                                  |                    |
+//! output <------------------- outbox <------------------+
+//! ```
 
+#![deny(clippy::print_stdout, clippy::print_stderr)]
+
+mod analyst;
+mod convert;
+mod documents;
+mod frames;
 mod guard;
 mod handlers;
+mod incoming;
+mod log;
+mod lsp;
+mod outbox;
 mod position;
+mod serve;
 mod state;
 
+pub use analyst::Compile;
 pub use guard::Guard;
-pub use handlers::Backend;
+pub use log::Log;
 pub use position::{Encoding, Positions};
-
-/// Serves one client over standard input and output until it leaves.
-pub async fn serve() {
-    let (service, socket) = tower_lsp::LspService::new(Backend::new);
-    // Handlers only wait on channels, so many at once cost nothing, and a
-    // cancel or an edit never waits behind a slow request.
-    tower_lsp::Server::new(tokio::io::stdin(), tokio::io::stdout(), socket)
-        .concurrency_level(256)
-        .serve(Guard::new(service))
-        .await;
-}
+pub use serve::{End, serve};

@@ -1,6 +1,6 @@
 //! The one door between the protocol's positions and byte offsets.
 
-use tower_lsp::lsp_types::{Position, PositionEncodingKind, Range};
+use crate::lsp::{Position, PositionEncodingKind, Range};
 
 /// How the client counts columns.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -49,6 +49,11 @@ impl<'t> Positions<'t> {
         Positions { text, lines: pintle_text::LineIndex::new(text), encoding }
     }
 
+    /// Whether the text has that line; an empty line follows the last line end.
+    pub fn has_line(&self, line: u32) -> bool {
+        (line as usize) < self.lines.n_lines()
+    }
+
     /// Byte offset of a position; a column past the line's end is the end, a
     /// line past the last is the end of the text.
     pub fn offset(&self, position: Position) -> usize {
@@ -59,7 +64,7 @@ impl<'t> Positions<'t> {
         let start = self.lines.start(line) as usize;
         let end = self.lines.start(line + 1) as usize;
         let mut column = 0;
-        for (at, c) in self.text[start..end].char_indices() {
+        for (at, c) in self.text.get(start..end).unwrap_or("").char_indices() {
             if column >= position.character || c == '\n' || c == '\r' {
                 return start + at;
             }
@@ -76,7 +81,7 @@ impl<'t> Positions<'t> {
         }
         let line = self.lines.line(offset as u32);
         let start = self.lines.start(line) as usize;
-        let character = self.text[start..offset].chars().map(|c| self.encoding.units(c)).sum();
+        let character = self.text.get(start..offset).unwrap_or("").chars().map(|c| self.encoding.units(c)).sum();
         Position { line: line as u32, character }
     }
 

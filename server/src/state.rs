@@ -1,19 +1,39 @@
-//! The state thread and the analysis thread.
+//! The state thread: the one owner of the documents.
+//!
+//! It applies edits in the order of arrival, answers questions from the newest
+//! results, and is the only one that publishes. An outcome of the analysis is
+//! shown only if no text that it depends on has changed since, so that what a
+//! client sees never goes back.
 
+use crate::analyst::{self, Analysed, Compile, Job, Mailbox};
+use crate::convert::{self, Age, Page, path_of};
+use crate::documents::{Document, EditFault};
+use crate::guard::panic_words;
+use crate::log::Log;
+use crate::lsp::notification::{PublishDiagnostics, ShowMessage};
+use crate::lsp::{
+    Diagnostic, Hover, MessageType, Position, PublishDiagnosticsParams, ShowMessageParams,
+    TextDocumentContentChangeEvent, Url,
+};
+use crate::outbox::Outbox;
 use crate::position::{Encoding, Positions};
 use pintle::Compilation;
 use pintle::analysis::{FileDiagnostic, Host, Snapshot};
-use std::collections::BTreeMap;
-use std::sync::atomic::{AtomicU64, Ordering};
-use std::sync::{Arc, Condvar, Mutex, mpsc};
+use pintle::source::Origin;
+use std::collections::{BTreeMap, BTreeSet};
+use std::panic::{AssertUnwindSafe, catch_unwind};
+use std::sync::Arc;
+use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, channel};
+use std::time::{Duration, Instant};
 use tokio::sync::oneshot;
-use tower_lsp::lsp_types::{
-    Diagnostic, DiagnosticRelatedInformation, DiagnosticSeverity, Hover, HoverContents, Location, MarkupContent,
-    MarkupKind, NumberOrString, Position, TextDocumentContentChangeEvent, Url,
-};
 
-/// What handlers say to the state thread.
-pub enum Message {
+/// How long a question waits for the results of the newest text.
+const PATIENCE: Duration = Duration::from_millis(200);
+/// Sheets nest to a bounded depth, but each level of it costs stack.
+const STACK: usize = 64 << 20;
+
+/// What the state thread is told.
+pub(crate) enum Message {
     /// How the client counts columns.
     Encoding(Encoding),
     /// A document is open.
@@ -22,244 +42,308 @@ pub enum Message {
     Change { uri: Url, version: i32, changes: Vec<TextDocumentContentChangeEvent> },
     /// A document is closed.
     Close { uri: Url },
+    /// Files on the disk may have changed.
+    DiskChanged,
     /// What is under the cursor?
     Hover { uri: Url, position: Position, reply: oneshot::Sender<Option<Hover>> },
-}
-
-/// Diagnostics on their way to the client.
-pub struct Publish {
-    /// Of which document.
-    pub uri: Url,
-    /// The full list; empty clears.
-    pub diagnostics: Vec<Diagnostic>,
-    /// The version that it belongs to.
-    pub version: Option<i32>,
-}
-
-struct Document {
-    text: String,
-    version: i32,
-}
-
-/// Newest work for the analysis thread; older work is overwritten.
-#[derive(Default)]
-struct Mailbox {
-    jobs: Mutex<BTreeMap<Url, Job>>,
-    wake: Condvar,
-}
-
-struct Job {
-    snapshot: Snapshot,
-    path: String,
-    version: i32,
-    generation: u64,
-    encoding: Encoding,
-}
-
-struct Shared {
-    mailbox: Mailbox,
-    generation: AtomicU64,
-    /// Last results of each document, for hovers.
-    results: Mutex<BTreeMap<Url, (i32, Arc<Compilation>)>>,
+    /// The analysis of one document is done.
+    Analysed(Analysed),
+    /// The client has left.
+    Stop,
 }
 
 /// Starts both threads.
-pub fn start(publish: impl Fn(Publish) + Send + Sync + 'static) -> mpsc::Sender<Message> {
-    let (sender, receiver) = mpsc::channel();
-    let publish: Arc<dyn Fn(Publish) + Send + Sync> = Arc::new(publish);
-    let shared =
-        Arc::new(Shared { mailbox: Mailbox::default(), generation: AtomicU64::new(0), results: Mutex::default() });
-    let (for_analysis, shown) = (shared.clone(), publish.clone());
-    std::thread::spawn(move || analyse(&for_analysis, &*shown));
-    std::thread::spawn(move || own(&receiver, &shared, &*publish));
-    sender
-}
-
-/// A name for files that the compiler reads: the path of the file, or the address itself.
-fn path_of(uri: &Url) -> String {
-    uri.to_file_path().ok().and_then(|path| path.to_str().map(String::from)).unwrap_or_else(|| uri.to_string())
-}
-
-fn own(receiver: &mpsc::Receiver<Message>, shared: &Shared, publish: &dyn Fn(Publish)) {
-    let mut host = Host::new();
-    let mut documents: BTreeMap<Url, Document> = BTreeMap::new();
-    let mut encoding = Encoding::Utf16;
-    while let Ok(first) = receiver.recv() {
-        // Everything that waits is taken before any work begins.
-        let mut waiting = vec![first];
-        waiting.extend(receiver.try_iter());
-        let mut changed: Vec<Url> = Vec::new();
-        for message in waiting {
-            match message {
-                Message::Encoding(chosen) => encoding = chosen,
-                Message::Open { uri, version, text } => {
-                    host.set_text(&path_of(&uri), &text);
-                    documents.insert(uri.clone(), Document { text, version });
-                    changed.push(uri);
-                }
-                Message::Change { uri, version, changes } => {
-                    // An edit of an unknown or newer document is never guessed at.
-                    let Some(document) = documents.get_mut(&uri).filter(|document| document.version < version) else {
-                        continue;
-                    };
-                    for change in changes {
-                        match change.range {
-                            None => document.text = change.text,
-                            Some(range) => {
-                                let positions = Positions::new(&document.text, encoding);
-                                let (start, end) = (positions.offset(range.start), positions.offset(range.end));
-                                if start <= end {
-                                    document.text.replace_range(start..end, &change.text);
-                                }
-                            }
-                        }
-                    }
-                    document.version = version;
-                    host.set_text(&path_of(&uri), &document.text);
-                    changed.push(uri);
-                }
-                Message::Close { uri } => {
-                    host.close(&path_of(&uri));
-                    documents.remove(&uri);
-                    changed.retain(|it| *it != uri);
-                    lock(&shared.mailbox.jobs).remove(&uri);
-                    lock(&shared.results).remove(&uri);
-                    shared.generation.fetch_add(1, Ordering::SeqCst);
-                    publish(Publish { uri, diagnostics: Vec::new(), version: None });
-                }
-                Message::Hover { uri, position, reply } => {
-                    // A closed reply is a cancelled request.
-                    if !reply.is_closed() {
-                        let hover = documents
-                            .get(&uri)
-                            .and_then(|document| hover(shared, &host, &uri, document, position, encoding));
-                        let _ = reply.send(hover);
-                    }
-                }
-            }
-        }
-        if changed.is_empty() {
-            continue;
-        }
-        let generation = shared.generation.fetch_add(1, Ordering::SeqCst) + 1;
-        changed.sort();
-        changed.dedup();
-        for uri in changed {
-            let Some(document) = documents.get(&uri) else { continue };
-            let (snapshot, path) = (host.snapshot(), path_of(&uri));
-            // Syntax at once; a clean text waits for the full list.
-            let syntax = snapshot.syntax_diagnostics(&path);
-            if !syntax.is_empty() {
-                let diagnostics = to_lsp(&uri, &document.text, &syntax, encoding);
-                publish(Publish { uri: uri.clone(), diagnostics, version: Some(document.version) });
-            }
-            let job = Job { snapshot, path, version: document.version, generation, encoding };
-            lock(&shared.mailbox.jobs).insert(uri, job);
-        }
-        shared.mailbox.wake.notify_one();
-    }
-}
-
-fn lock<T>(mutex: &Mutex<T>) -> std::sync::MutexGuard<'_, T> {
-    mutex.lock().unwrap_or_else(std::sync::PoisonError::into_inner)
-}
-
-fn analyse(shared: &Shared, publish: &dyn Fn(Publish)) {
-    loop {
-        let mut jobs = lock(&shared.mailbox.jobs);
-        while jobs.is_empty() {
-            jobs = shared.mailbox.wake.wait(jobs).unwrap_or_else(std::sync::PoisonError::into_inner);
-        }
-        let Some((uri, job)) = jobs.pop_first() else { continue };
-        drop(jobs);
-        let text = job.snapshot.text(&job.path).unwrap_or("").to_string();
-        let compiled = std::panic::catch_unwind(std::panic::AssertUnwindSafe(|| job.snapshot.compile(&job.path)));
-        let diagnostics = match &compiled {
-            Ok(Some(compilation)) => to_lsp(&uri, &text, &Snapshot::diagnostics(&job.path, compilation), job.encoding),
-            Ok(None) => continue,
-            Err(_) => vec![Diagnostic {
-                severity: Some(DiagnosticSeverity::ERROR),
-                code: Some(NumberOrString::String("internal-fault".into())),
-                source: Some("pintle".into()),
-                message: "internal fault while reading this sheet; please report it".into(),
-                ..Diagnostic::default()
-            }],
+pub(crate) fn start(outbox: Outbox, compile: Compile, log: Log) -> std::io::Result<Sender<Message>> {
+    let (sender, receiver) = channel();
+    let mailbox = Arc::new(Mailbox::default());
+    let (for_analysis, report, log_there) = (mailbox.clone(), sender.clone(), log.clone());
+    std::thread::Builder::new().name("analysis".into()).stack_size(STACK).spawn(move || {
+        let report = |analysed| {
+            // Fails only when the server ends.
+            let _ = report.send(Message::Analysed(analysed));
         };
-        // Overtaken by a newer edit of this document: say nothing.
-        if lock(&shared.mailbox.jobs).contains_key(&uri) {
-            continue;
+        analyst::work(&for_analysis, compile, report, &log_there);
+    })?;
+    let state = State {
+        host: Host::new(),
+        open: BTreeMap::new(),
+        touched: BTreeSet::new(),
+        encoding: Encoding::Utf16,
+        generation: 0,
+        waiting: Vec::new(),
+        mailbox,
+        outbox,
+        log,
+    };
+    std::thread::Builder::new().name("state".into()).stack_size(STACK).spawn(move || state.run(&receiver))?;
+    Ok(sender)
+}
+
+struct State {
+    host: Host,
+    open: BTreeMap<Url, Open>,
+    /// Documents whose text changed since the last look at them.
+    touched: BTreeSet<Url>,
+    encoding: Encoding,
+    /// Number of the present state of all texts.
+    generation: u64,
+    waiting: Vec<Waiting>,
+    mailbox: Arc<Mailbox>,
+    outbox: Outbox,
+    log: Log,
+}
+
+/// An open document with what is known of it.
+struct Open {
+    path: String,
+    document: Document,
+    /// The state of all texts that the newest job is for.
+    wanted: u64,
+    /// Faults of the text alone.
+    syntax: Vec<FileDiagnostic>,
+    /// The newest outcome, and the state that it belongs to.
+    results: Option<(u64, Arc<Compilation>)>,
+}
+
+/// A question that waits for the results of its text.
+struct Waiting {
+    uri: Url,
+    text: String,
+    position: Position,
+    deadline: Instant,
+    reply: oneshot::Sender<Option<Hover>>,
+}
+
+impl State {
+    fn run(mut self, receiver: &Receiver<Message>) {
+        loop {
+            let first = match self.waiting.iter().map(|it| it.deadline).min() {
+                None => receiver.recv().map_err(|_| RecvTimeoutError::Disconnected),
+                Some(deadline) => receiver.recv_timeout(deadline.saturating_duration_since(Instant::now())),
+            };
+            if matches!(first, Err(RecvTimeoutError::Disconnected)) {
+                break;
+            }
+            // Everything that waits is taken before any work begins.
+            for message in first.into_iter().chain(receiver.try_iter()) {
+                if matches!(message, Message::Stop) {
+                    return self.mailbox.close();
+                }
+                self.take(message);
+            }
+            self.look_at_touched();
+            self.answer_overdue();
         }
-        let newest = shared.generation.load(Ordering::SeqCst);
-        if let Ok(Some(compilation)) = compiled {
-            lock(&shared.results).insert(uri.clone(), (job.version, Arc::new(compilation)));
-        }
-        if job.generation <= newest {
-            publish(Publish { uri, diagnostics, version: Some(job.version) });
+        self.mailbox.close();
+    }
+
+    /// A message that panics costs itself, and its document if it was an edit.
+    fn take(&mut self, message: Message) {
+        let edited = match &message {
+            Message::Open { uri, .. } | Message::Change { uri, .. } => Some(uri.clone()),
+            _ => None,
+        };
+        if let Err(panic) = catch_unwind(AssertUnwindSafe(|| self.handle(message))) {
+            self.log.line(format_args!("panic in the state thread: {}", panic_words(&*panic)));
+            if let Some(uri) = edited {
+                self.lose(&uri);
+            }
         }
     }
-}
 
-fn hover(
-    shared: &Shared,
-    host: &Host,
-    uri: &Url,
-    document: &Document,
-    position: Position,
-    encoding: Encoding,
-) -> Option<Hover> {
-    let positions = Positions::new(&document.text, encoding);
-    let offset = positions.offset(position) as u32;
-    let known = lock(&shared.results).get(uri).cloned();
-    let (version, compilation) = match known {
-        Some(known) => known,
-        // The first hover may come before the first analysis.
-        None => (document.version, Arc::new(host.snapshot().compile(&path_of(uri))?)),
-    };
-    let hover = Snapshot::hover(&document.text, &compilation, offset)?;
-    let value = if version == document.version {
-        hover.markdown
-    } else {
-        format!("{}\n\n(of the text before the last edit)", hover.markdown)
-    };
-    Some(Hover {
-        contents: HoverContents::Markup(MarkupContent { kind: MarkupKind::Markdown, value }),
-        range: Some(positions.range(hover.range.0, hover.range.1)),
-    })
-}
-
-fn to_lsp(uri: &Url, text: &str, found: &[FileDiagnostic], encoding: Encoding) -> Vec<Diagnostic> {
-    let positions = Positions::new(text, encoding);
-    let own = path_of(uri);
-    found
-        .iter()
-        .map(|it| {
-            let related: Vec<DiagnosticRelatedInformation> = it
-                .related
-                .iter()
-                // Places in other files need their text; the words are in the message's help.
-                .filter(|(path, ..)| *path == own)
-                .map(|(_, start, end, words)| DiagnosticRelatedInformation {
-                    location: Location { uri: uri.clone(), range: positions.range(*start, *end) },
-                    message: words.clone(),
-                })
-                .collect();
-            let message = match &it.help {
-                Some(help) => format!("{}\n{help}", it.message),
-                None => it.message.clone(),
-            };
-            Diagnostic {
-                range: positions.range(it.start, it.end),
-                severity: Some(match it.severity {
-                    pintle_text::Severity::Error => DiagnosticSeverity::ERROR,
-                    pintle_text::Severity::Warning => DiagnosticSeverity::WARNING,
-                    pintle_text::Severity::Hint => DiagnosticSeverity::HINT,
-                }),
-                code: Some(NumberOrString::String(it.code.into())),
-                source: Some("pintle".into()),
-                message,
-                related_information: (!related.is_empty()).then_some(related),
-                ..Diagnostic::default()
+    fn handle(&mut self, message: Message) {
+        match message {
+            Message::Encoding(encoding) => self.encoding = encoding,
+            Message::Open { uri, version, text } => {
+                self.answer_all(&uri);
+                let document = Document::new(text, version);
+                let open = Open { path: path_of(&uri), document, wanted: 0, syntax: Vec::new(), results: None };
+                self.open.insert(uri.clone(), open);
+                self.touched.insert(uri);
             }
-        })
-        .collect()
+            Message::Change { uri, version, changes } => self.change(uri, version, changes),
+            Message::Close { uri } => self.close(&uri),
+            Message::DiskChanged => self.touched.extend(self.open.keys().cloned()),
+            Message::Hover { uri, position, reply } => self.hover(uri, position, reply),
+            Message::Analysed(analysed) => self.analysed(analysed),
+            Message::Stop => {}
+        }
+    }
+
+    fn change(&mut self, uri: Url, version: i32, changes: Vec<TextDocumentContentChangeEvent>) {
+        // Questions asked before the edit are answered from what was known then.
+        self.answer_all(&uri);
+        let Some(open) = self.open.get_mut(&uri) else {
+            return self.log.line(format_args!("an edit of {uri}, which is not open"));
+        };
+        match open.document.apply(version, changes, self.encoding) {
+            Ok(()) => {
+                self.touched.insert(uri);
+            }
+            Err(EditFault::Lost) => {}
+            Err(EditFault::NotNewer) => self.log.line(format_args!("{uri}: version {version} is not newer")),
+            Err(EditFault::OutOfText) => self.lose(&uri),
+        }
+    }
+
+    /// The text in the editor is not known any more. Nothing is guessed: no
+    /// diagnostics, no answers, until the client sends the whole text.
+    fn lose(&mut self, uri: &Url) {
+        let Some(open) = self.open.get_mut(uri) else { return };
+        open.document.lost = true;
+        open.results = None;
+        let (path, version) = (open.path.clone(), open.document.version);
+        self.log.line(format_args!("{uri}: edit {version} does not fit the text"));
+        self.mailbox.withdraw(uri);
+        self.touched.remove(uri);
+        self.publish(uri, Vec::new(), Some(version));
+        let message = format!("Pintle has lost track of {path}: please close it and open it again.");
+        self.outbox.notify::<ShowMessage>(ShowMessageParams { typ: MessageType::ERROR, message });
+    }
+
+    fn close(&mut self, uri: &Url) {
+        self.answer_all(uri);
+        let Some(open) = self.open.remove(uri) else { return };
+        self.host.close(&open.path);
+        self.mailbox.withdraw(uri);
+        self.touched.remove(uri);
+        self.publish(uri, Vec::new(), None);
+        // Whoever uses it reads it from the disk from now on.
+        let users = self.users_of(&open.path);
+        self.touched.extend(users);
+    }
+
+    fn analysed(&mut self, analysed: Analysed) {
+        let Analysed { uri, generation, compilation } = analysed;
+        let Some(open) = self.open.get_mut(&uri).filter(|open| !open.document.lost) else { return };
+        if let Some(compilation) = &compilation {
+            open.results = Some((generation, compilation.clone()));
+        }
+        // Overtaken: good enough for a hover, not for a list that stands until the next one.
+        if open.wanted != generation {
+            return;
+        }
+        let Some(open) = self.open.get(&uri) else { return };
+        let page =
+            Page { uri: &uri, text: &open.document.text, encoding: self.encoding, compilation: compilation.as_deref() };
+        let diagnostics = match &compilation {
+            Some(compilation) => page.diagnostics(&Snapshot::diagnostics(&open.path, compilation)),
+            None => {
+                let mut list = page.diagnostics(&open.syntax);
+                list.push(convert::internal_fault());
+                list
+            }
+        };
+        self.publish(&uri, diagnostics, Some(open.document.version));
+        self.answer_all(&uri);
+    }
+
+    /// Hands changed texts on, says at once what is wrong with the text alone,
+    /// and has the rest computed.
+    fn look_at_touched(&mut self) {
+        if self.touched.is_empty() {
+            return;
+        }
+        let touched = std::mem::take(&mut self.touched);
+        self.generation += 1;
+        let mut users = BTreeSet::new();
+        for uri in &touched {
+            let Some(open) = self.open.get(uri) else { continue };
+            self.host.set_text(&open.path, &open.document.text);
+            users.extend(self.users_of(&open.path));
+        }
+        let snapshot = self.host.snapshot();
+        for uri in &touched {
+            self.look_at_syntax(uri, &snapshot);
+        }
+        // The edited ones last, so that they are computed first.
+        for uri in users.difference(&touched).chain(&touched) {
+            let Some(open) = self.open.get_mut(uri).filter(|open| !open.document.lost) else { continue };
+            open.wanted = self.generation;
+            let (uri, path) = (uri.clone(), open.path.clone());
+            self.mailbox.put(Job { uri, path, snapshot: snapshot.clone(), generation: self.generation });
+        }
+    }
+
+    fn look_at_syntax(&mut self, uri: &Url, snapshot: &Snapshot) {
+        let Some(open) = self.open.get_mut(uri).filter(|open| !open.document.lost) else { return };
+        let found = catch_unwind(AssertUnwindSafe(|| snapshot.syntax_diagnostics(&open.path)));
+        // A panic comes again in the analysis, which says so.
+        let found = found.unwrap_or_default();
+        // Published now, a list hides all that only the analysis knows: so only when it says something new.
+        let words = |list: &[FileDiagnostic]| list.iter().map(|it| (it.code, it.message.clone())).collect::<Vec<_>>();
+        let is_new = !found.is_empty() && words(&found) != words(&open.syntax);
+        open.syntax = found;
+        if is_new && let Some(open) = self.open.get(uri) {
+            let page = Page { uri, text: &open.document.text, encoding: self.encoding, compilation: None };
+            self.publish(uri, page.diagnostics(&open.syntax), Some(open.document.version));
+        }
+    }
+
+    /// Other open documents whose last outcome used the file, or missed one.
+    fn users_of(&self, path: &str) -> Vec<Url> {
+        let uses = |open: &Open| {
+            open.results.as_ref().is_some_and(|(_, compilation)| {
+                let files = compilation.sources.files();
+                files.iter().any(|file| file.origin == Origin::Used && file.path == path)
+                    || compilation.diagnostics.iter().any(|it| it.code == pintle::codes::UNREADABLE_FILE)
+            })
+        };
+        self.open.iter().filter(|(_, open)| open.path != path && uses(open)).map(|(uri, _)| uri.clone()).collect()
+    }
+
+    fn publish(&self, uri: &Url, diagnostics: Vec<Diagnostic>, version: Option<i32>) {
+        let params = PublishDiagnosticsParams { uri: uri.clone(), diagnostics, version };
+        self.outbox.notify::<PublishDiagnostics>(params);
+    }
+
+    fn hover(&mut self, uri: Url, position: Position, reply: oneshot::Sender<Option<Hover>>) {
+        // A closed reply is a cancelled request.
+        if reply.is_closed() {
+            return;
+        }
+        let Some(open) = self.open.get(&uri).filter(|open| !open.document.lost) else {
+            let _ = reply.send(None);
+            return;
+        };
+        let current = !self.touched.contains(&uri)
+            && open.results.as_ref().is_some_and(|(generation, _)| *generation == open.wanted);
+        let text = open.document.text.clone();
+        let waiting = Waiting { uri, text, position, deadline: Instant::now() + PATIENCE, reply };
+        if current { self.answer(waiting) } else { self.waiting.push(waiting) }
+    }
+
+    fn answer(&self, waiting: Waiting) {
+        let Waiting { uri, text, position, reply, .. } = waiting;
+        if reply.is_closed() {
+            return;
+        }
+        let hover = self.open.get(&uri).and_then(|open| {
+            let (generation, compilation) = open.results.as_ref()?;
+            let age = if *generation == open.wanted { Age::Current } else { Age::Earlier };
+            let positions = Positions::new(&text, self.encoding);
+            let found = Snapshot::hover(&text, compilation, positions.offset(position) as u32)?;
+            Some(convert::hover(found, &positions, age))
+        });
+        // Cancelled in the meantime, perhaps.
+        let _ = reply.send(hover);
+    }
+
+    fn answer_all(&mut self, uri: &Url) {
+        self.answer_where(|waiting| waiting.uri == *uri);
+    }
+
+    fn answer_overdue(&mut self) {
+        let now = Instant::now();
+        self.answer_where(|waiting| waiting.deadline <= now || waiting.reply.is_closed());
+    }
+
+    fn answer_where(&mut self, due: impl Fn(&Waiting) -> bool) {
+        for waiting in self.waiting.extract_if(.., |waiting| due(waiting)).collect::<Vec<_>>() {
+            // A panic drops the reply, and the handler answers with an error.
+            if let Err(panic) = catch_unwind(AssertUnwindSafe(|| self.answer(waiting))) {
+                self.log.line(format_args!("panic in an answer: {}", panic_words(&*panic)));
+            }
+        }
+    }
 }

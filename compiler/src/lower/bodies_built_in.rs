@@ -431,7 +431,7 @@ impl<'s> Lowerer<'s, '_> {
             );
         }
         let cube = scale * scale * scale;
-        let (volume, outer_radius) = (self.num(found.volume * cube), self.num(found.reach_x * scale));
+        let (volume, outer_radius) = (self.num(found.volume * cube), self.num(found.reach[0] * scale));
         let centre = found.centre.map(|component| self.num(component * scale));
         // Integrals of squares become moments: J_x = yy + zz; off-diagonal members carry the minus sign.
         let [xx, yy, zz, xy, xz, yz] = found.second.map(|member| member * cube * scale * scale);

@@ -14,6 +14,7 @@ mod faults;
 mod format;
 mod grammar;
 mod items;
+mod keywords;
 mod layout;
 mod marks;
 #[cfg(test)]
@@ -21,6 +22,7 @@ mod tests;
 mod words;
 
 pub use format::format;
+pub use keywords::{Keyword, Role, keywords};
 
 use ast::SourceFile;
 
