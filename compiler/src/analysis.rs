@@ -189,7 +189,7 @@ impl Snapshot {
         match quantity.si {
             Some(si) => markdown.push_str(&format!(
                 " = {} {}",
-                crate::render::number::engineering(quantity.unit.from_si(si)),
+                crate::number::engineering(quantity.unit.from_si(si)),
                 quantity.unit.text
             )),
             None => markdown.push_str(&format!(": {}", quantity.status.word())),

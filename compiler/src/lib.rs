@@ -18,6 +18,7 @@ pub mod lower;
 pub mod model;
 pub mod names;
 pub mod nearest;
+pub mod number;
 mod outcome;
 pub mod render;
 pub mod results;

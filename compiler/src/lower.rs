@@ -11,6 +11,7 @@ mod bodies_built_in;
 mod calls;
 mod expressions;
 mod fields;
+mod ledger_energies;
 mod ledgers;
 mod limits;
 mod literals;
@@ -37,7 +38,7 @@ use smol_str::SmolStr;
 use std::collections::{BTreeMap, HashMap};
 
 pub use calls::FUNCTIONS;
-pub use ledgers::LedgerPlan;
+pub use ledgers::{LedgerPlan, LinePlan};
 pub use limits::{ConfirmPlan, LimitPlan};
 pub use value::{Condition, Typed, Value};
 
@@ -74,6 +75,8 @@ pub struct Requirement {
     pub owner: String,
     /// The thing that breaks it.
     pub subject: SmolStr,
+    /// What hangs on it: the results of a formula; none: all quantities named `SUBJECT.*`.
+    pub results: Vec<NodeId>,
     /// Where the subject stands.
     pub place: Place,
     /// Where the requirement stands.
@@ -249,15 +252,13 @@ impl<'s> Lowerer<'s, '_> {
             ItemKind::Derived { name, kind, value } => self.derived(&mut env, item, name, kind.as_ref(), value),
             ItemKind::Material { name, fields } => self.material(&mut env, item, name, fields),
             ItemKind::Body { name, shape, fields } => self.body(&mut env, item, name, shape, fields),
-            ItemKind::Rotor { name, axis, placements } => self.rotor(&mut env, item, name, axis.as_ref(), placements),
+            ItemKind::Rotor { name, axis, placements } => self.rotor(&mut env, name, axis.as_ref(), placements),
             ItemKind::Load { name, fields, path } => self.load(&mut env, item, name, fields, path.as_ref()),
             ItemKind::Spring { name, on, fields } => self.spring(&mut env, item, name, on.as_ref(), fields),
             ItemKind::Brake { name, on, fields } => self.brake(&mut env, item, name, on.as_ref(), fields),
             ItemKind::Axis { name, through, along } => self.axis(&mut env, name, through, along),
             ItemKind::Train { name, links } => self.train(&mut env, item, name, links),
-            ItemKind::Ledger { name, train, under, lines } => {
-                self.ledger(&mut env, item, name, train.as_ref(), under, lines)
-            }
+            ItemKind::Ledger { name, train, under, lines } => self.ledger(&mut env, name, train.as_ref(), under, lines),
             ItemKind::Wanted(wanted) => self.wanted_item(&mut env, item, wanted),
             ItemKind::Unit { .. } => Value::Unit(id),
             ItemKind::Shape { .. } | ItemKind::Formula { .. } => Value::Template(id),

@@ -1,14 +1,20 @@
 //! From equations to results: solving, then judging requirements, limits and
 //! second routes on the values.
 
+mod facts;
+mod faults;
+mod solving;
+
 use crate::codes;
 use crate::lower::{ConfirmPlan, Hazards, LedgerPlan, LimitPlan, Lowered};
 use crate::model::{InputValue, Model};
 use crate::names::Sheet;
+use crate::number::shown;
 use crate::results::*;
 use crate::source::Origin;
-use pintle_graph::{CompareOp, Function, InputId, NodeId, Op, QuantityId};
-use pintle_solve::{Equation, NotFound, Outcome, Problem, Unknown};
+use facts::NodeFacts;
+use pintle_graph::{CompareOp, InputId, Op, QuantityId};
+use pintle_solve::Outcome;
 use pintle_text::{Diagnostic, Place};
 use std::collections::HashMap;
 
@@ -19,10 +25,14 @@ const EQUAL: f64 = 1e-12;
 /// Solves a lowered sheet and judges it.
 pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (CaseResults, Model, Vec<Diagnostic>) {
     let mut acc = std::mem::take(&mut lowered.diagnostics);
-    let outcomes = solve(sheet, &mut lowered, &mut acc);
-    let nodes = NodeFacts::new(&lowered, &outcomes);
-    requirements(&lowered, &nodes, &mut acc);
-    lost_values(sheet, &lowered, &nodes, &mut acc);
+    let outcomes = solving::solve(&mut lowered, &mut acc);
+    let facts = NodeFacts::new(&lowered, &outcomes);
+    faults::requirements(&lowered, &facts, &mut acc);
+    faults::lost_values(sheet, &lowered, &facts, &mut acc);
+    // A tube whose bore exceeds its outside has no inertia, whatever its formula gives.
+    for (value, _) in lowered.model.values.iter_mut().zip(&facts.broken).filter(|(_, broken)| **broken) {
+        *value = f64::NAN;
+    }
     let line = |place: Place| sheet.sources.location(place).line;
     let mut results = CaseResults { case, ..CaseResults::default() };
     for (index, quantity) in lowered.model.quantities.iter().enumerate() {
@@ -30,21 +40,19 @@ pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (Ca
             continue;
         }
         let id = QuantityId(index as u32);
-        results.quantities.push(quantity_result(&lowered.model, id, &outcomes, &nodes, line(quantity.place)));
+        results.quantities.push(quantity_result(&lowered.model, id, &outcomes, &facts, line(quantity.place)));
     }
     for plan in &lowered.ledgers {
         results.ledgers.push(ledger_result(&lowered.model, plan, line(plan.place)));
-        flows(&lowered.model, plan, &mut acc);
+        faults::flows(&lowered.model, plan, &mut acc);
     }
     for plan in &lowered.limits {
-        results.limits.push(limit_result(&lowered.model, plan, &nodes, line(plan.place)));
+        results.limits.push(limit_result(&lowered.model, plan, &facts, line(plan.place)));
     }
     for plan in &lowered.confirms {
         let confirm = confirm_result(&lowered.model, plan, line(plan.place));
         if confirm.agrees == Some(false) {
-            let show = |si: Option<f64>| {
-                si.map_or("?".into(), |si| format!("{:.6} {}", plan.unit.from_si(si), plan.unit.text))
-            };
+            let show = |si: Option<f64>| si.map_or("?".into(), |si| shown(si, &plan.unit));
             acc.push(
                 Diagnostic::new(
                     codes::CONFIRM_DISAGREES,
@@ -66,326 +74,11 @@ pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (Ca
 
 type Outcomes = HashMap<QuantityId, Outcome>;
 
-fn solve(sheet: &Sheet, lowered: &mut Lowered, acc: &mut Vec<Diagnostic>) -> Outcomes {
-    let model = &mut lowered.model;
-    let mut inputs: Vec<f64> = Vec::with_capacity(model.inputs.len());
-    for input in &model.inputs {
-        inputs.push(match input.value {
-            InputValue::Given { nominal, .. } => nominal,
-            InputValue::Wanted { .. } => f64::NAN,
-        });
-    }
-    let unknowns: Vec<Unknown> = lowered
-        .unknowns
-        .iter()
-        .map(|&(input, _)| match model.input(input).value {
-            InputValue::Wanted { low, high, .. } => Unknown { input, low, high },
-            InputValue::Given { nominal, .. } => Unknown { input, low: nominal, high: nominal },
-        })
-        .collect();
-    let equations = lowered.equations.iter().map(|it| Equation { left: it.left, right: it.right }).collect();
-    let problem = Problem { unknowns, equations };
-    let structure = pintle_solve::structure(&model.graph, &problem);
-    let mut values = pintle_graph::evaluate(&model.graph, &inputs);
-    let found = pintle_solve::solve(&model.graph, &problem, &structure, &mut inputs, &mut values, &|| false);
-    model.values = values;
-    let mut outcomes = Outcomes::new();
-    for (at, (&(input, id), outcome)) in lowered.unknowns.iter().zip(found).enumerate() {
-        let quantity = model.quantity(id);
-        let place = quantity.place;
-        let show = |si: f64| format!("{:.6} {}", quantity.unit.from_si(si), quantity.unit.text);
-        let range = match model.input(input).value {
-            InputValue::Wanted { low, high, .. } => format!("{} .. {}", show(low), show(high)),
-            InputValue::Given { .. } => String::new(),
-        };
-        if structure.free_unknowns.contains(&at) {
-            // Its equation may be the one that could not be read.
-            if lowered.n_broken_equations > 0 {
-                outcomes.insert(id, outcome);
-                continue;
-            }
-            acc.push(
-                Diagnostic::new(
-                    codes::NOT_DETERMINED,
-                    place,
-                    format!("`{}` is not fixed by any equation", quantity.name),
-                )
-                .with_help("add a condition (`where LEFT == RIGHT`, or a ledger that it enters), or make it `given`"),
-            );
-        } else {
-            match &outcome {
-                Outcome::Several { values } => {
-                    let list: Vec<String> = values.iter().map(|&value| show(value)).collect();
-                    acc.push(
-                        Diagnostic::new(
-                            codes::SEVERAL_SOLUTIONS,
-                            place,
-                            format!(
-                                "`{}` has {} solutions in {range}: {}",
-                                quantity.name,
-                                values.len(),
-                                list.join(", ")
-                            ),
-                        )
-                        .with_help("narrow the range behind `within` to the one that is meant"),
-                    );
-                }
-                Outcome::NotFound { closest, residual, why } => {
-                    let text = match why {
-                        NotFound::NoRoot => {
-                            format!("no value of `{}` in {range} satisfies its equations", quantity.name)
-                        }
-                        NotFound::Undefined => {
-                            format!("the equations of `{}` have no value anywhere in {range}", quantity.name)
-                        }
-                        NotFound::Stretch => format!(
-                            "the equations of `{}` hold on a whole stretch of {range}: they do not fix it",
-                            quantity.name
-                        ),
-                        NotFound::Free => format!("`{}` is not fixed by any equation", quantity.name),
-                        NotFound::BadRange => format!("the range of `{}` is empty", quantity.name),
-                        NotFound::Cancelled => format!("the search for `{}` was stopped", quantity.name),
-                    };
-                    let mut diagnostic = Diagnostic::new(codes::NO_SOLUTION, place, text);
-                    if let (Some(closest), true) = (closest, residual.is_finite()) {
-                        diagnostic = diagnostic.with_note(format!("the closest approach is at {}", show(*closest)));
-                    }
-                    if let Some(at) = structure
-                        .blocks
-                        .iter()
-                        .find(|block| block.unknowns.contains(&at))
-                        .and_then(|block| block.equations.first())
-                    {
-                        diagnostic = diagnostic.with_label(lowered.equations[*at].place, "the equation");
-                    }
-                    acc.push(
-                        diagnostic.with_help("widen the range, or look for a given that makes the balance impossible"),
-                    );
-                }
-                Outcome::Found { .. } | Outcome::Skipped => {}
-            }
-        }
-        outcomes.insert(id, outcome);
-    }
-    for &at in &structure.spare_equations {
-        spare(sheet, lowered, at, acc);
-    }
-    outcomes
-}
-
-/// An equation with nothing left to fix: a ledger may close all the same.
-fn spare(sheet: &Sheet, lowered: &Lowered, at: usize, acc: &mut Vec<Diagnostic>) {
-    let equation = &lowered.equations[at];
-    let (Some(left), Some(right)) = (lowered.model.value(equation.left), lowered.model.value(equation.right)) else {
-        return;
-    };
-    let largest = match &equation.ledger {
-        Some(name) => lowered
-            .ledgers
-            .iter()
-            .filter(|plan| plan.name == *name)
-            .flat_map(|plan| &plan.lines)
-            .filter_map(|(_, _, node, _)| lowered.model.value(*node))
-            .fold(0.0, |acc: f64, value| acc.max(value.abs())),
-        None => left.abs().max(right.abs()),
-    };
-    let difference = left - right;
-    if difference.abs() <= 1e-9 * largest {
-        return;
-    }
-    let _ = sheet;
-    acc.push(match &equation.ledger {
-        Some(name) => Diagnostic::new(
-            codes::LEDGER_OPEN,
-            equation.place,
-            format!(
-                "the ledger `{name}` does not close: {:.6} J are {}",
-                difference.abs(),
-                if difference > 0.0 { "missing on the side of the gains" } else { "left over" }
-            ),
-        )
-        .with_help("everything in it is given; make one quantity unknown: `wanted MEMBER.speed within LOW .. HIGH`"),
-        None => Diagnostic::new(
-            codes::OVER_DETERMINED,
-            equation.place,
-            "this equation has nothing left to determine, and it does not hold",
-        )
-        .with_help("drop it, or make one of its quantities `wanted`"),
-    });
-}
-
-/// What is known of each node besides its value.
-struct NodeFacts {
-    toleranced: Vec<bool>,
-    open: Vec<bool>,
-}
-
-impl NodeFacts {
-    fn new(lowered: &Lowered, outcomes: &Outcomes) -> NodeFacts {
-        let model = &lowered.model;
-        let n = model.graph.len();
-        let mut inexact: Vec<bool> = model
-            .inputs
-            .iter()
-            .map(|input| matches!(input.value, InputValue::Given { tolerance: Some(_), .. }))
-            .collect();
-        // An unknown takes the tolerances of the equations that it enters.
-        let used: Vec<Vec<usize>> = inputs_of_equations(lowered);
-        loop {
-            let mut grown = false;
-            for inputs in &used {
-                if inputs.iter().any(|&input| inexact[input]) {
-                    for &input in inputs {
-                        if matches!(model.inputs[input].value, InputValue::Wanted { .. }) && !inexact[input] {
-                            inexact[input] = true;
-                            grown = true;
-                        }
-                    }
-                }
-            }
-            if !grown {
-                break;
-            }
-        }
-        let (mut toleranced, mut open) = (vec![false; n], vec![false; n]);
-        for index in 0..n {
-            let node = NodeId(index as u32);
-            if let Op::Input(id) = model.graph.op(node) {
-                let input = model.input(id);
-                toleranced[index] = inexact[id.0 as usize];
-                if matches!(input.value, InputValue::Wanted { .. }) {
-                    let found = input.quantity.and_then(|id| outcomes.get(&id));
-                    open[index] = !matches!(found, Some(Outcome::Found { .. }));
-                }
-                continue;
-            }
-            let (mut t, mut o) = (false, false);
-            model.graph.operands(node, |operand| {
-                t |= toleranced[operand.index()];
-                o |= open[operand.index()];
-            });
-            toleranced[index] = t;
-            open[index] = o;
-        }
-        NodeFacts { toleranced, open }
-    }
-}
-
-/// The inputs that each equation depends on.
-fn inputs_of_equations(lowered: &Lowered) -> Vec<Vec<usize>> {
-    let graph = &lowered.model.graph;
-    let mut seen = vec![usize::MAX; graph.len()];
-    let mut result = Vec::with_capacity(lowered.equations.len());
-    for (at, equation) in lowered.equations.iter().enumerate() {
-        let mut inputs = Vec::new();
-        let mut stack = vec![equation.left, equation.right];
-        while let Some(node) = stack.pop() {
-            if std::mem::replace(&mut seen[node.index()], at) == at {
-                continue;
-            }
-            if let Op::Input(input) = graph.op(node) {
-                inputs.push(input.0 as usize);
-            }
-            graph.operands(node, |operand| stack.push(operand));
-        }
-        result.push(inputs);
-    }
-    result
-}
-
-fn requirements(lowered: &Lowered, nodes: &NodeFacts, acc: &mut Vec<Diagnostic>) {
-    for requirement in &lowered.requirements {
-        let Some(value) = lowered.model.value(requirement.condition) else { continue };
-        if value != 0.0 || nodes.open[requirement.condition.index()] {
-            continue;
-        }
-        let mut text = format!(
-            "`{}` breaks a requirement of its {}: {}",
-            requirement.subject, requirement.owner, requirement.text
-        );
-        if let Some((left, _, right)) = &requirement.sides
-            && let (Some(a), Some(b)) = (lowered.model.value(left.node), lowered.model.value(right.node))
-        {
-            let unit = pintle_units::display_unit(&left.ty);
-            let show = |si: f64| format!("{} {}", crate::render::number::engineering(unit.from_si(si)), unit.text);
-            text = format!("{text} ({} against {})", show(a), show(b));
-        }
-        let mut diagnostic = Diagnostic::new(codes::REQUIREMENT_BROKEN, requirement.place, text);
-        if requirement.origin != requirement.place {
-            diagnostic = diagnostic.with_label(requirement.origin, "required here");
-        }
-        acc.push(diagnostic.with_help("correct the size, or choose the shape or formula that is meant"));
-    }
-}
-
-/// Where values were lost: division by zero, roots of negative numbers.
-fn lost_values(sheet: &Sheet, lowered: &Lowered, nodes: &NodeFacts, acc: &mut Vec<Diagnostic>) {
-    let model = &lowered.model;
-    let value = |node: NodeId| model.values.get(node.index()).copied().unwrap_or(f64::NAN);
-    let mut reported: Vec<NodeId> = Vec::new();
-    for quantity in &model.quantities {
-        if value(quantity.node).is_finite() || nodes.open[quantity.node.index()] {
-            continue;
-        }
-        let mut node = quantity.node;
-        loop {
-            let mut next = None;
-            if let Op::Select(condition, a, b) = model.graph.op(node) {
-                let taken = if value(condition).is_nan() {
-                    condition
-                } else if value(condition) != 0.0 {
-                    a
-                } else {
-                    b
-                };
-                next = (!value(taken).is_finite()).then_some(taken);
-            } else {
-                model.graph.operands(node, |operand| {
-                    if next.is_none() && !value(operand).is_finite() {
-                        next = Some(operand);
-                    }
-                });
-            }
-            match next {
-                Some(operand) => node = operand,
-                None => break,
-            }
-        }
-        if reported.contains(&node) {
-            continue;
-        }
-        reported.push(node);
-        let place = lowered.node_places.get(&node).copied().unwrap_or(quantity.place);
-        let (code, text) = match model.graph.op(node) {
-            Op::Divide(a, b) if value(b) == 0.0 => {
-                let _ = a;
-                (codes::DIVISION_BY_ZERO, "the divisor is zero".to_string())
-            }
-            Op::Power(a, ..) if value(a) == 0.0 => (codes::DIVISION_BY_ZERO, "zero has no negative power".to_string()),
-            Op::Power(a, _, den) if value(a) < 0.0 && den % 2 == 0 => {
-                (codes::UNDEFINED_VALUE, format!("the root of a negative number, {:.6} in SI units", value(a)))
-            }
-            Op::Apply(function, a)
-                if value(node).is_nan() || matches!(function, Function::Ln | Function::Log10 | Function::Tan) =>
-            {
-                (codes::UNDEFINED_VALUE, format!("{function:?} has no value for {:.6}", value(a)).to_lowercase())
-            }
-            _ if value(node).is_infinite() => (codes::OVERFLOW, "the value is too large to hold".to_string()),
-            _ => (codes::UNDEFINED_VALUE, "there is no value for these operands".to_string()),
-        };
-        let mut diagnostic = Diagnostic::new(code, place, format!("`{}` has no value: {text}", quantity.name));
-        if sheet.origin(place.item) == Origin::Standard || place != quantity.place {
-            diagnostic = diagnostic.with_label(quantity.place, "needed here");
-        }
-        acc.push(diagnostic.with_help("check the givens that enter it; `pintle explain` shows the chain"));
-    }
-}
-
 fn quantity_result(
     model: &Model,
     id: QuantityId,
     outcomes: &Outcomes,
-    nodes: &NodeFacts,
+    facts: &NodeFacts,
     line: usize,
 ) -> QuantityResult {
     let quantity = model.quantity(id);
@@ -396,7 +89,7 @@ fn quantity_result(
         (Some(Outcome::Found { .. }), Some(_)) => Status::Found,
         (Some(_), _) => Status::Undecided("no solution was found".into()),
         (None, Some(_)) => Status::Evaluated,
-        (None, None) if nodes.open[quantity.node.index()] => {
+        (None, None) if facts.open[quantity.node.index()] => {
             Status::Undecided("an unknown that it needs was not found".into())
         }
         (None, None) => Status::Failed,
@@ -426,7 +119,7 @@ fn quantity_result(
         low,
         high,
         std,
-        toleranced: nodes.toleranced[quantity.node.index()],
+        toleranced: facts.toleranced[quantity.node.index()],
         status,
         shown: quantity.shown,
         place: quantity.place,
@@ -439,11 +132,11 @@ fn ledger_result(model: &Model, plan: &LedgerPlan, line: usize) -> LedgerResult 
     let lines: Vec<LedgerEntry> = plan
         .lines
         .iter()
-        .map(|(name, side, node, ends)| LedgerEntry {
-            name: name.to_string(),
-            side: *side,
-            si: model.value(*node),
-            from_to: ends.and_then(|(a, b)| Some((model.value(a)?, model.value(b)?))),
+        .map(|it| LedgerEntry {
+            name: it.name.to_string(),
+            side: it.side,
+            si: model.value(it.energy),
+            from_to: it.ends.and_then(|(a, b)| Some((model.value(a)?, model.value(b)?))),
         })
         .collect();
     // Summed from the printed lines, not from the equation that was solved.
@@ -471,51 +164,7 @@ fn ledger_result(model: &Model, plan: &LedgerPlan, line: usize) -> LedgerResult 
     }
 }
 
-/// What the energies across links must not do.
-fn flows(model: &Model, plan: &LedgerPlan, acc: &mut Vec<Diagnostic>) {
-    for flow in &plan.flows {
-        let Some(crossing) = model.value(flow.crossing).filter(|value| value.is_finite()) else { continue };
-        if let Some((back, sign)) = flow.locking
-            && model.value(back) == Some(0.0)
-            && crossing * sign > 0.0
-        {
-            acc.push(
-                Diagnostic::new(
-                    codes::SELF_LOCKING,
-                    plan.place,
-                    format!(
-                        "`{}` locks itself (back = 0), but the ledger `{}` would drive it backwards",
-                        flow.link, plan.name
-                    ),
-                )
-                .with_label(flow.place, "the link")
-                .with_help(
-                    "the train stands still in this state; state a `back` efficiency above 0 if it does not lock",
-                ),
-            );
-        }
-        if let Some(sign) = flow.slack
-            && crossing * sign > 1e-9
-        {
-            acc.push(
-                Diagnostic::new(
-                    codes::SLACK_ROPE,
-                    flow.place,
-                    format!(
-                        "in the ledger `{}` the rope `{}` would have to push with {:.6} J",
-                        plan.name,
-                        flow.link,
-                        crossing.abs()
-                    ),
-                )
-                .with_label(plan.place, "this ledger")
-                .with_help("the rope falls slack; split the problem where it does, or leave the rope out of the train"),
-            );
-        }
-    }
-}
-
-fn limit_result(model: &Model, plan: &LimitPlan, nodes: &NodeFacts, line: usize) -> LimitResult {
+fn limit_result(model: &Model, plan: &LimitPlan, facts: &NodeFacts, line: usize) -> LimitResult {
     let bound = model.value(plan.bound);
     // The governing side is the one nearest to the bound, or furthest past it.
     let reach = |value: f64, bound: f64| match plan.op {
@@ -526,9 +175,9 @@ fn limit_result(model: &Model, plan: &LimitPlan, nodes: &NodeFacts, line: usize)
     };
     let mut governing: Option<(Option<QuantityId>, f64)> = None;
     let mut unknown = false;
-    let mut toleranced = nodes.toleranced[plan.bound.index()];
+    let mut toleranced = facts.toleranced[plan.bound.index()];
     for &(id, node) in &plan.sides {
-        toleranced |= nodes.toleranced[node.index()];
+        toleranced |= facts.toleranced[node.index()];
         match (model.value(node).filter(|it| it.is_finite()), bound) {
             (Some(value), Some(bound)) => {
                 if governing.is_none_or(|(_, other)| reach(value, bound) < reach(other, bound)) {

@@ -12,11 +12,12 @@ pub mod explain;
 pub(crate) mod fixture;
 pub mod json;
 pub mod list;
-pub mod number;
 pub mod page;
 pub mod text;
 pub mod verdicts;
 
+pub use crate::number;
+pub(crate) use crate::number::{shown, unit_text, with_unit};
 pub use page::Colour;
 
 use crate::model::{InputTolerance, InputValue, Model};
@@ -24,7 +25,6 @@ use crate::results::{CaseResults, QuantityResult, Results};
 use crate::source::Sources;
 use pintle_graph::Op;
 use pintle_text::Diagnostic;
-use pintle_units::Unit;
 
 /// All that is known of a compiled sheet, for reading.
 #[derive(Clone, Copy, Debug)]
@@ -78,22 +78,4 @@ pub(crate) fn written(model: Option<&Model>, quantity: &QuantityResult) -> Writt
             Written { number, tolerance, range: None }
         }
     }
-}
-
-/// A unit as it stands behind a number: nothing for pure numbers.
-pub(crate) fn unit_text(unit: &Unit) -> &str {
-    if unit.text == "1" { "" } else { &unit.text }
-}
-
-/// A number with its unit.
-pub(crate) fn with_unit(number: impl std::fmt::Display, unit: &Unit) -> String {
-    match unit_text(unit) {
-        "" => number.to_string(),
-        unit => format!("{number} {unit}"),
-    }
-}
-
-/// A value in SI, shown in `unit`.
-pub(crate) fn shown(si: f64, unit: &Unit) -> String {
-    with_unit(number::engineering(unit.from_si(si)), unit)
 }

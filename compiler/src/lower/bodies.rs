@@ -79,14 +79,7 @@ impl<'s> Lowerer<'s, '_> {
         fields: &'s [Field],
     ) -> Value {
         if let Some(repeat) = &item.clauses.repeat {
-            let first = self.whole_number(env, &repeat.from).unwrap_or(1);
-            let mut k = first;
-            let items = self.repeated(env, repeat, |this, env| {
-                let name = Name { text: format!("{}[{k}]", name.text).into(), span: name.span };
-                k += 1;
-                this.one_body(env, item, &name, shape, fields)
-            });
-            return Value::Series { first, items };
+            return self.series(env, repeat, name, |this, env, name| this.one_body(env, item, name, shape, fields));
         }
         self.one_body(env, item, name, shape, fields)
     }
@@ -159,7 +152,7 @@ impl<'s> Lowerer<'s, '_> {
         if failed {
             return Value::Failed;
         }
-        let volume = self.form_volume(&form, place, &name.text);
+        let volume = self.form_volume(&form, place);
         let mass = match (&stated_mass, &density, volume) {
             (Some(mass), Some(density), Some(volume)) => {
                 self.agreeing_mass(mass, density, volume, &name.text, place);
@@ -201,9 +194,11 @@ impl<'s> Lowerer<'s, '_> {
             let source = self.source(&item.clauses).unwrap_or_default();
             let Some(properties) = self.properties(&body, mass) else { return Value::Failed };
             // A stated mass is already in the table under this name.
-            let mass_value = match &stated_mass {
-                Some(typed) => Value::Number(typed.clone()),
-                None => self.body_member(&body, "mass", "mass", properties.mass),
+            let known = self.out.model.named(&format!("{}.mass", body.name)).filter(|_| measured);
+            let mass_value = match (&stated_mass, known) {
+                (Some(typed), _) => Value::Number(typed.clone()),
+                (None, Some(_)) => Value::Number(Typed { node: properties.mass, ty: self.kind_type("mass"), place }),
+                (None, None) => self.body_member(&body, "mass", "mass", properties.mass),
             };
             members.push(("mass".into(), mass_value.clone()));
             if let (Some(density), true) = (density_node, density.is_none()) {
@@ -345,11 +340,11 @@ impl<'s> Lowerer<'s, '_> {
         }
     }
 
-    fn form_volume(&mut self, form: &Form, place: Place, name: &SmolStr) -> Option<NodeId> {
+    fn form_volume(&mut self, form: &Form, place: Place) -> Option<NodeId> {
         match form {
             Form::Solid(solid) => Some(solid.volume),
             Form::Measured(_) => None,
-            Form::Shape(id, bound) => self.shape_volume(*id, bound, place, name),
+            Form::Shape(id, bound) => self.shape_volume(*id, bound, place),
         }
     }
 

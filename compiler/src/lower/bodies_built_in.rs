@@ -36,8 +36,8 @@ impl<'s> Lowerer<'s, '_> {
     ) -> Option<(Form, Members)> {
         match word {
             "measured" => self.measured(fields),
-            "turned" => self.turned_form(env, fields),
-            "extruded" => self.extruded_form(env, fields),
+            "turned" => self.turned_form(fields),
+            "extruded" => self.extruded_form(fields),
             _ => self.mesh_form(env, fields),
         }
     }
@@ -113,7 +113,7 @@ impl<'s> Lowerer<'s, '_> {
         Some(points)
     }
 
-    fn turned_form(&mut self, _env: &mut Env, fields: &mut Fields<'s>) -> Option<(Form, Members)> {
+    fn turned_form(&mut self, fields: &mut Fields<'s>) -> Option<(Form, Members)> {
         let Some((mut env, expr)) = self.take_expr(fields, "profile") else {
             self.missing(fields, "profile", "list of (axial, radial) points");
             return None;
@@ -242,7 +242,7 @@ impl<'s> Lowerer<'s, '_> {
         Area { area, first, second }
     }
 
-    fn extruded_form(&mut self, _env: &mut Env, fields: &mut Fields<'s>) -> Option<(Form, Members)> {
+    fn extruded_form(&mut self, fields: &mut Fields<'s>) -> Option<(Form, Members)> {
         let length = self.need_number(fields, "length", "length", Group::Body);
         let Some((mut env, expr)) = self.take_expr(fields, "outline") else {
             self.missing(fields, "outline", "list of (y, z) points");
@@ -361,6 +361,7 @@ impl<'s> Lowerer<'s, '_> {
             sides: None,
             text: "the outline encloses an area".into(),
             owner: "outline".into(),
+            results: Vec::new(),
             subject: fields.owner.clone(),
             place: fields.place,
             origin: fields.place,

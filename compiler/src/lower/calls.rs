@@ -305,6 +305,7 @@ impl<'s> Lowerer<'s, '_> {
         let mut inner = self.env(id);
         inner.locals = bound;
         self.open.push(id);
+        let before = self.out.requirements.len();
         let result = self.formula_body(
             &mut inner,
             place,
@@ -316,7 +317,28 @@ impl<'s> Lowerer<'s, '_> {
             offers,
         );
         self.open.pop();
+        self.hang_on(before, &result);
         result
+    }
+
+    /// A formula outside its validity gives no result: what it returns hangs on its requirements.
+    fn hang_on(&mut self, first: usize, result: &Value) {
+        let values: Vec<&Value> = match result {
+            Value::Object(object) => object.members.iter().map(|(_, value)| value).collect(),
+            value => vec![value],
+        };
+        let mut nodes = Vec::new();
+        for value in values {
+            if let Value::Number(typed) = value
+                // An argument handed through is not the formula's.
+                && !matches!(self.out.model.graph.op(typed.node), Op::Literal(_) | Op::Input(_) | Op::Quantity(..))
+            {
+                nodes.push(typed.node);
+            }
+        }
+        for requirement in self.out.requirements.iter_mut().skip(first) {
+            requirement.results.extend(&nodes);
+        }
     }
 
     #[allow(clippy::too_many_arguments)]
@@ -476,6 +498,7 @@ impl<'s> Lowerer<'s, '_> {
                     text,
                     owner: owner.to_string(),
                     subject: subject.clone(),
+                    results: Vec::new(),
                     place,
                     origin: Place { item: origin, span: requirement.span },
                 });

@@ -7,15 +7,13 @@
 //! of flow, the sign of the energy that crosses it.
 
 use super::space::Arithmetic;
-use super::trains::{MemberKind, Sense, Train};
+use super::trains::{MemberKind, Train};
 use super::value::{Entity, Object, Typed, Value};
 use super::{Env, Equation, Lowerer};
 use crate::codes;
 use crate::results::{Group, Shown, Side};
-use pintle_graph::{NodeId, Op};
-use pintle_syntax::ast::{
-    Entry, ExprKind, Field, Item, LedgerLine, LedgerLineKind, Name, Path, Segment, StateSpec, Wanted,
-};
+use pintle_graph::NodeId;
+use pintle_syntax::ast::{ExprKind, Field, LedgerLine, LedgerLineKind, Name, Path, Segment, StateSpec, Wanted};
 use pintle_text::{Diagnostic, Place};
 use smol_str::SmolStr;
 use std::rc::Rc;
@@ -27,12 +25,25 @@ pub struct LedgerPlan {
     pub name: SmolStr,
     /// Its train.
     pub train: SmolStr,
-    /// Lines: name, side, energy, and for stored energies start and end.
-    pub lines: Vec<(SmolStr, Side, NodeId, Option<(NodeId, NodeId)>)>,
+    /// Its lines in order.
+    pub lines: Vec<LinePlan>,
     /// Energies that cross links, with what they must not do.
     pub flows: Vec<Flow>,
     /// Where.
     pub place: Place,
+}
+
+/// One line of a ledger.
+#[derive(Clone, Debug)]
+pub struct LinePlan {
+    /// A member, or the name of a gain or loss.
+    pub name: SmolStr,
+    /// Where it stands.
+    pub side: Side,
+    /// Its energy; of what is stored, the change.
+    pub energy: NodeId,
+    /// Energy stored at start and end.
+    pub ends: Option<(NodeId, NodeId)>,
 }
 
 /// The energy that crosses a link towards its outer member.
@@ -46,7 +57,9 @@ pub struct Flow {
     pub locking: Option<(NodeId, f64)>,
     /// Sign of a crossing that a rope cannot bring; None: no rope.
     pub slack: Option<f64>,
-    /// The spring's presence beyond a lossy link forbids an average flow.
+    /// Whether the link loses energy, so that the direction of the flow counts.
+    pub lossy: bool,
+    /// Where.
     pub place: Place,
 }
 
@@ -60,28 +73,27 @@ pub struct LedgerEntity {
 }
 
 /// A ledger being put together.
-struct Draft {
-    name: SmolStr,
-    train: Train,
-    start: Option<NodeId>,
-    end: Option<NodeId>,
+pub(super) struct Draft {
+    pub name: SmolStr,
+    pub train: Train,
+    pub start: Option<NodeId>,
+    pub end: Option<NodeId>,
     /// Displacement of the first member, and its sense: 1 up or forward.
-    travel: Option<(NodeId, f64)>,
+    pub travel: Option<(NodeId, f64)>,
     /// Energy into each member beyond what it stores: losses less gains.
-    spent: Vec<Vec<NodeId>>,
-    stored: Vec<Vec<NodeId>>,
-    plan: LedgerPlan,
-    gains: Vec<NodeId>,
-    uses: Vec<NodeId>,
+    pub spent: Vec<Vec<NodeId>>,
+    pub stored: Vec<Vec<NodeId>>,
+    pub plan: LedgerPlan,
+    pub gains: Vec<NodeId>,
+    pub uses: Vec<NodeId>,
     /// Members of the finished object.
-    members: Vec<(SmolStr, Value)>,
+    pub members: Vec<(SmolStr, Value)>,
 }
 
 impl<'s> Lowerer<'s, '_> {
     pub(super) fn ledger(
         &mut self,
         env: &mut Env,
-        item: &'s Item,
         name: &Name,
         train: Option<&Name>,
         under: &[Vec<Name>],
@@ -151,14 +163,13 @@ impl<'s> Lowerer<'s, '_> {
         for line in lines {
             match &line.kind {
                 LedgerLineKind::Wanted(wanted) => self.equations(&mut inner, wanted),
-                LedgerLineKind::Limit { condition } => self.limit_in(&mut inner, line.span, &line.clauses, condition),
+                LedgerLineKind::Limit { condition } => self.limit_in(&mut inner, &line.clauses, condition),
                 _ => {}
             }
         }
         let end_speed = draft.end.unwrap_or_else(|| self.num(0.0));
         let entity = LedgerEntity { train: draft.train.name.clone(), end_speed };
         self.out.ledgers.push(draft.plan);
-        let _ = item;
         Value::Object(Rc::new(Object {
             name: name.text.clone(),
             what: "a ledger",
@@ -349,7 +360,7 @@ impl<'s> Lowerer<'s, '_> {
         Some(())
     }
 
-    fn member_of(&mut self, env: &mut Env, train: &Train, path: &Path) -> Option<usize> {
+    pub(super) fn member_of(&mut self, env: &mut Env, train: &Train, path: &Path) -> Option<usize> {
         let name = self.member_name(env, path)?;
         if let Some(at) = train.member(&name) {
             return Some(at);
@@ -453,7 +464,12 @@ impl<'s> Lowerer<'s, '_> {
             let change = self.minus(after, before);
             draft.stored[at].push(change);
             draft.uses.push(change);
-            draft.plan.lines.push((member.name.clone(), Side::Kinetic, change, Some((before, after))));
+            draft.plan.lines.push(LinePlan {
+                name: member.name.clone(),
+                side: Side::Kinetic,
+                energy: change,
+                ends: Some((before, after)),
+            });
             if let Some((travel, _)) = draft.travel {
                 let node = self.times(travel, member.coefficient);
                 state.push((
@@ -523,273 +539,26 @@ impl<'s> Lowerer<'s, '_> {
             let typed = Typed { node: quantity.node, ty: quantity.ty, place };
             return Value::Number(typed);
         }
-        let value = self.built_in(full.clone(), Group::Ledger, Shown::Always, kind, node, place);
+        let ty = self.kind_type(kind);
+        // Whole runs of a shaft are counted in revolutions, not in degrees.
+        let unit = if kind == "angle" { pintle_units::parse("rev", &|_| None).ok() } else { None };
+        let value = Value::Number(self.quantity(
+            full.clone(),
+            Group::Ledger,
+            Shown::Always,
+            ty,
+            node,
+            unit,
+            place,
+            SmolStr::default(),
+        ));
         if let Some(id) = self.out.model.named(&full) {
             self.states.push((state, id));
         }
         value
     }
-
-    fn gravity_and_springs(&mut self, env: &mut Env, draft: &mut Draft, lines: &'s [LedgerLine]) {
-        let rising: Vec<usize> = (0..draft.train.members.len())
-            .filter(|&at| matches!(&draft.train.members[at].kind, MemberKind::Load(load) if !load.level))
-            .collect();
-        if let (Some((travel, sense)), false) = (draft.travel, rising.is_empty()) {
-            let gravity = self.sheet.lookup(env.origin, "g_n").map(|id| self.entity(id));
-            let gravity = match gravity {
-                Some(Value::Number(typed)) => typed.node,
-                _ => self.num(9.80665),
-            };
-            for at in rising {
-                let member = draft.train.members[at].clone();
-                let MemberKind::Load(load) = &member.kind else { continue };
-                let distance = self.times(travel, member.coefficient);
-                let rise = self.times(distance, load.rise);
-                let weight = self.times(load.mass, gravity);
-                let mut change = self.times(weight, rise);
-                if sense * member.sense.sign() < 0.0 {
-                    change = self.negate(change);
-                }
-                draft.stored[at].push(change);
-                draft.uses.push(change);
-                draft.plan.lines.push((member.name.clone(), Side::Height, change, None));
-            }
-        } else if let Some(&at) = rising.first() {
-            let place = draft.plan.place;
-            self.report(
-                Diagnostic::new(
-                    codes::LEDGER_OPEN,
-                    place,
-                    format!("`{}` moves on a rising path, but nothing says how far", draft.train.members[at].name),
-                )
-                .with_help("add a line `travel MEMBER DISTANCE down_path`"),
-            );
-        }
-        for line in lines {
-            let LedgerLineKind::Spring { spring, from, to } = &line.kind else { continue };
-            let object = match self.path(env, spring) {
-                Value::Object(object) => object,
-                _ => continue,
-            };
-            let Entity::Spring(rate) = &object.entity else {
-                self.report(Diagnostic::new(
-                    codes::NOT_A_QUANTITY,
-                    env.place(spring.span),
-                    format!("a spring is needed here, but `{}` is {}", object.name, object.what),
-                ));
-                continue;
-            };
-            let kind = if rate.torsion { "angle" } else { "length" };
-            let ends = [from, to].map(|expr| {
-                let typed = self.number(env, expr)?;
-                self.expect(&typed, kind, "a deflection")
-            });
-            let [Some(a), Some(b)] = ends else { continue };
-            let half = self.num(0.5);
-            let energy = |this: &mut Self, deflection: NodeId| {
-                let square = this.square(deflection);
-                let product = this.times(rate.rate, square);
-                this.times(half, product)
-            };
-            let (before, after) = (energy(self, a.node), energy(self, b.node));
-            let change = self.minus(after, before);
-            draft.stored[0].push(change);
-            draft.uses.push(change);
-            draft.plan.lines.push((object.name.clone(), Side::Spring, change, Some((before, after))));
-        }
-    }
-
-    fn entries(&mut self, env: &mut Env, draft: &mut Draft, lines: &'s [LedgerLine]) -> bool {
-        let mut fine = true;
-        for line in lines {
-            let (entry, side) = match &line.kind {
-                LedgerLineKind::Gain(entry) => (entry, Side::Gain),
-                LedgerLineKind::Lose(entry) => (entry, Side::Lose),
-                _ => continue,
-            };
-            fine &= self.entry(env, draft, entry, side).is_some();
-        }
-        fine
-    }
-
-    fn entry(&mut self, env: &mut Env, draft: &mut Draft, entry: &Entry, side: Side) -> Option<()> {
-        let name = entry.field.path.segments.first()?.name.clone();
-        let place = env.place(name.span);
-        let value = self.definition(env, entry.field.value.as_ref()?);
-        let typed = self.as_number(value, place)?;
-        let typed =
-            self.expect_kind(&typed, pintle_units::Kind::Energy, &format!("the line `{}`", name.text), place)?;
-        self.weight_twice(env, draft, entry, place);
-        let full = format!("{}.{}", draft.name, name.text);
-        let unit = self.display(env, &entry.field.clauses);
-        let source = self.source(&entry.field.clauses).unwrap_or_default();
-        let typed = self.quantity(full.into(), Group::Ledger, Shown::Always, typed.ty, typed.node, unit, place, source);
-        let at = match &entry.at {
-            Some(path) => self.member_of(env, &draft.train.clone(), path)?,
-            None => match self.acts_at(draft, entry) {
-                Some(at) => at,
-                None if draft.train.links.iter().all(|link| link.efficiency.is_none()) => 0,
-                None => {
-                    let word = if side == Side::Gain { "gain" } else { "lose" };
-                    self.report(
-                        Diagnostic::new(
-                            codes::LEDGER_OPEN,
-                            place,
-                            format!("where on the train does `{}` act? Its links have losses", name.text),
-                        )
-                        .with_help(format!("write `{word} {} at MEMBER = ...`", name.text)),
-                    );
-                    return None;
-                }
-            },
-        };
-        if side == Side::Gain {
-            let negative = self.negate(typed.node);
-            draft.spent[at].push(negative);
-            draft.gains.push(typed.node);
-        } else {
-            draft.spent[at].push(typed.node);
-            draft.uses.push(typed.node);
-        }
-        draft.plan.lines.push((name.text.clone(), side, typed.node, None));
-        env.define(name.text.clone(), Value::Number(typed.clone()));
-        draft.members.push((name.text, Value::Number(typed)));
-        Some(())
-    }
-
-    /// A load's weight already enters by its path; a line that brings it again is a slip.
-    fn weight_twice(&mut self, env: &Env, draft: &Draft, entry: &Entry, place: Place) {
-        let Some(at) = self.acts_at(draft, entry) else { return };
-        let rises = matches!(&draft.train.members[at].kind, MemberKind::Load(load) if !load.level);
-        let text: String = self.sheet.sources.text(env.place(entry.field.span)).split_whitespace().collect();
-        // With a cosine it is the force on the path, which friction follows.
-        if rises && text.contains("g_n*") && !text.contains("cos(") {
-            self.report(
-                Diagnostic::new(
-                    codes::WEIGHT_TWICE,
-                    place,
-                    format!(
-                        "`{}` brings gravity in again: the path of `{}` already does",
-                        place_name(entry),
-                        draft.train.members[at].name
-                    ),
-                )
-                .with_help("leave the weight to the load's path; gains and losses hold the rest"),
-            );
-        }
-    }
-
-    /// The member that a line's value names.
-    fn acts_at(&self, draft: &Draft, entry: &Entry) -> Option<usize> {
-        let text = entry.field.value.as_ref().map(|value| match value {
-            pintle_syntax::ast::Definition::Value(expr) => expr,
-            pintle_syntax::ast::Definition::Choose(choose) => &choose.arms[0].value,
-        })?;
-        let mut found = None;
-        let mut stack = vec![text];
-        while let Some(expr) = stack.pop() {
-            match &expr.kind {
-                ExprKind::Path(path) => {
-                    if let Some(segment) = path.segments.first()
-                        && path.segments.len() > 1
-                        && let Some(at) = draft.train.member(&segment.name.text)
-                    {
-                        found = found.or(Some(at));
-                    }
-                }
-                ExprKind::Call { arguments, .. } => stack.extend(arguments.iter().map(|it| &it.value)),
-                ExprKind::Unary { operand, .. } => stack.push(operand),
-                ExprKind::Binary { left, right, .. } => {
-                    stack.push(right);
-                    stack.push(left);
-                }
-                _ => {}
-            }
-        }
-        found
-    }
-
-    /// Losses of the links, from the outermost members inwards.
-    fn link_losses(&mut self, draft: &mut Draft, place: Place) {
-        let n = draft.train.members.len();
-        let depth = |mut at: usize| {
-            let mut depth = 0;
-            while let Some((_, parent)) = draft.train.members[at].parent {
-                depth += 1;
-                at = parent;
-            }
-            depth
-        };
-        let mut order: Vec<usize> = (0..n).collect();
-        order.sort_by_key(|&at| std::cmp::Reverse(depth(at)));
-        // No-load torque times the angle at the arrow's tail.
-        if let Some((travel, _)) = draft.travel {
-            for link in draft.train.links.clone() {
-                if let Some(drag) = link.drag {
-                    let angle = self.times(travel, draft.train.members[link.from].coefficient);
-                    let loss = self.times(drag, angle);
-                    draft.spent[link.from].push(loss);
-                    draft.uses.push(loss);
-                    draft.plan.lines.push((format!("{}.drag", link.name).into(), Side::Link, loss, None));
-                }
-            }
-        }
-        let one = self.num(1.0);
-        for at in order {
-            let Some((link_at, parent)) = draft.train.members[at].parent else { continue };
-            let link = draft.train.links[link_at].clone();
-            let terms: Vec<NodeId> = draft.stored[at].iter().chain(&draft.spent[at]).copied().collect();
-            let crossing = self.sum(&terms);
-            let outward = link.to == at;
-            let (out_efficiency, in_efficiency) =
-                if outward { (link.efficiency, link.back) } else { (link.back, link.efficiency) };
-            let mut inward = vec![crossing];
-            if out_efficiency.is_some() || in_efficiency.is_some() {
-                let forward = out_efficiency.unwrap_or(one);
-                let backward = in_efficiency.unwrap_or(one);
-                let reciprocal = self.over(one, forward);
-                let share = self.minus(reciprocal, one);
-                let driving = self.times(crossing, share);
-                let share = self.minus(one, backward);
-                let reverse = self.negate(crossing);
-                let driven = self.times(reverse, share);
-                // Of the two laws the one in force is the greater: each is negative on the other's side.
-                let loss = self.out.model.graph.add(Op::Max(driving, driven));
-                let name = format!("{}.{}.loss", draft.name, link.name);
-                let value = self.built_in(name, Group::Ledger, Shown::OnRequest, "energy", loss, place);
-                let loss = match &value {
-                    Value::Number(typed) => typed.node,
-                    _ => loss,
-                };
-                draft.members.push((
-                    link.name.clone(),
-                    Value::plain(format!("{}.{}", draft.name, link.name), "a link", vec![("loss".into(), value)]),
-                ));
-                draft.uses.push(loss);
-                draft.plan.lines.push((link.name.clone(), Side::Link, loss, None));
-                inward.push(loss);
-            }
-            let child_load = matches!(draft.train.members[at].kind, MemberKind::Load(_));
-            let slack = match draft.travel {
-                // Going up, the rope must bring energy; going down, it must take some.
-                Some((_, sense)) if link.kind == "rope" && child_load => {
-                    Some(-sense * draft.train.members[at].sense.sign())
-                }
-                _ => None,
-            };
-            let locking = link.back.map(|back| (back, if outward { -1.0 } else { 1.0 }));
-            draft.plan.flows.push(Flow { link: link.name.clone(), crossing, locking, slack, place: link.place });
-            let node = self.sum(&inward);
-            draft.spent[parent].push(node);
-        }
-        let _ = Sense::Same;
-    }
 }
 
 fn same_case(names: &[Name], case: &[SmolStr]) -> bool {
     names.len() == case.len() && names.iter().all(|name| case.contains(&name.text))
-}
-
-fn place_name(entry: &Entry) -> &str {
-    entry.field.path.segments.first().map_or("this line", |segment| segment.name.text.as_str())
 }

@@ -5,7 +5,7 @@ use super::{Env, Lowerer};
 use crate::codes;
 use pintle_graph::{CompareOp, NodeId, QuantityId};
 use pintle_syntax::ast::{Clauses, Expr, ExprKind, Item};
-use pintle_text::{Diagnostic, ItemId, Place, Span};
+use pintle_text::{Diagnostic, ItemId, Place};
 use pintle_units::Unit;
 use smol_str::SmolStr;
 
@@ -52,15 +52,14 @@ pub struct ConfirmPlan {
 impl<'s> Lowerer<'s, '_> {
     pub(super) fn limit(&mut self, id: ItemId, item: &Item, every: bool, condition: &Expr) {
         let mut env = self.env(id);
-        let span = Span::new(0, item.len);
         if every {
-            self.limit_every(&mut env, span, &item.clauses, condition);
+            self.limit_every(&mut env, &item.clauses, condition);
         } else {
-            self.limit_in(&mut env, span, &item.clauses, condition);
+            self.limit_in(&mut env, &item.clauses, condition);
         }
     }
 
-    pub(super) fn limit_in(&mut self, env: &mut Env, _span: Span, clauses: &Clauses, condition: &Expr) {
+    pub(super) fn limit_in(&mut self, env: &mut Env, clauses: &Clauses, condition: &Expr) {
         let value = self.expr(env, condition);
         let Value::Condition(found) = value else {
             if !value.is_failed() {
@@ -129,7 +128,7 @@ impl<'s> Lowerer<'s, '_> {
     }
 
     /// `limit every drum.rim_speed <= 25 m/s`: the state in all problems.
-    fn limit_every(&mut self, env: &mut Env, _span: Span, clauses: &Clauses, condition: &Expr) {
+    fn limit_every(&mut self, env: &mut Env, clauses: &Clauses, condition: &Expr) {
         let ExprKind::Binary { op, left, right, .. } = &condition.kind else {
             self.report(Diagnostic::new(
                 codes::EXPECTED_EQUATION,

@@ -7,7 +7,7 @@ use crate::codes;
 use crate::model::{Input, InputTolerance, InputValue, Quantity};
 use crate::results::{Group, Shown};
 use pintle_graph::{NodeId, Op, QuantityId};
-use pintle_syntax::ast::{BinaryOp, Cite, Clauses, Definition, Expr, ExprKind, Item, Name, Range, Wanted};
+use pintle_syntax::ast::{BinaryOp, Cite, Clauses, Definition, Expr, ExprKind, Item, Name, Range, Repeat, Wanted};
 use pintle_text::{Diagnostic, Place};
 use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
@@ -163,16 +163,27 @@ impl<'s> Lowerer<'s, '_> {
         value: &Definition,
     ) -> Value {
         if let Some(repeat) = &item.clauses.repeat {
-            let first = self.whole_number(env, &repeat.from).unwrap_or(1);
-            let mut k = first;
-            let items = self.repeated(env, repeat, |this, env| {
-                let name = Name { text: format!("{}[{k}]", name.text).into(), span: name.span };
-                k += 1;
-                this.derived_one(env, item, &name, kind, value)
-            });
-            return Value::Series { first, items };
+            return self.series(env, repeat, name, |this, env, name| this.derived_one(env, item, name, kind, value));
         }
         self.derived_one(env, item, name, kind, value)
+    }
+
+    /// `NAME[k]` for each value of a counter.
+    pub(super) fn series(
+        &mut self,
+        env: &mut Env,
+        repeat: &Repeat,
+        name: &Name,
+        mut one: impl FnMut(&mut Self, &mut Env, &Name) -> Value,
+    ) -> Value {
+        let first = self.whole_number(env, &repeat.from).unwrap_or(1);
+        let mut k = first;
+        let items = self.repeated(env, repeat, |this, env| {
+            let name = Name { text: format!("{}[{k}]", name.text).into(), span: name.span };
+            k += 1;
+            one(this, env, &name)
+        });
+        Value::Series { first, items }
     }
 
     fn derived_one(
@@ -194,6 +205,9 @@ impl<'s> Lowerer<'s, '_> {
             other => return other,
         };
         let Some(typed) = self.declared(&value_env, typed, kind, name) else { return Value::Failed };
+        if kind.is_none() {
+            self.warn(&typed.ty.warnings(), typed.place);
+        }
         let written = match literal_of(over) {
             Some((_, literal)) => literal.unit.as_ref().and_then(|text| self.unit(&value_env, text)),
             None => None,

@@ -13,7 +13,7 @@ use super::{Env, Lowerer};
 use crate::codes;
 use crate::results::{Group, Shown};
 use pintle_graph::{NodeId, Op};
-use pintle_syntax::ast::{Item, Name, Placement};
+use pintle_syntax::ast::{Name, Placement};
 use pintle_text::{Diagnostic, Place};
 use smol_str::SmolStr;
 use std::rc::Rc;
@@ -49,6 +49,7 @@ pub struct Rotor {
 /// Where an alias stands, for `less ... from`.
 struct Alias {
     name: SmolStr,
+    part: SmolStr,
     origin: Vector,
     turn: Rotation,
     density: Option<NodeId>,
@@ -58,7 +59,6 @@ impl<'s> Lowerer<'s, '_> {
     pub(super) fn rotor(
         &mut self,
         env: &mut Env,
-        item: &'s Item,
         name: &Name,
         axis: Option<&Name>,
         placements: &'s [Placement],
@@ -87,14 +87,11 @@ impl<'s> Lowerer<'s, '_> {
             match &placement.clauses.repeat {
                 Some(repeat) => {
                     let done = self.repeated(env, repeat, |this, env| {
-                        this.placement(env, item, name, &axis, placement, &mut contributions, &mut aliases)
+                        this.placement(env, name, &axis, placement, &mut contributions, &mut aliases)
                     });
                     fine &= done.iter().all(Option::is_some);
                 }
-                None => {
-                    fine &=
-                        self.placement(env, item, name, &axis, placement, &mut contributions, &mut aliases).is_some()
-                }
+                None => fine &= self.placement(env, name, &axis, placement, &mut contributions, &mut aliases).is_some(),
             }
         }
         if !fine || contributions.is_empty() {
@@ -328,7 +325,6 @@ impl<'s> Lowerer<'s, '_> {
     fn placement(
         &mut self,
         env: &mut Env,
-        item: &'s Item,
         rotor: &Name,
         axis: &Axis,
         placement: &'s Placement,
@@ -349,8 +345,12 @@ impl<'s> Lowerer<'s, '_> {
                 return None;
             }
         };
-        let mut fields =
-            Fields::new(format!("{}.{}", rotor.text, part_text), env, place, &placement.fields, &placement.clauses);
+        // A part that stands there again is counted, so that each field has a name of its own.
+        let owner = match aliases.iter().filter(|alias| alias.part == part_text).count() {
+            0 => format!("{}.{part_text}", rotor.text),
+            n => format!("{}.{part_text}[{}]", rotor.text, n + 1),
+        };
+        let mut fields = Fields::new(owner, env, place, &placement.fields, &placement.clauses);
         fields.locals.clone_from(&env.locals);
         let named = match self.take_expr(&mut fields, "named") {
             Some((_, expr)) => self.word(expr).map(SmolStr::new),
@@ -437,7 +437,7 @@ impl<'s> Lowerer<'s, '_> {
                 for part in parts {
                     self.add_part(contributions, part, &own_turn, &identity, origin, axis, placement.less);
                 }
-                self.alias(aliases, named.unwrap_or(part_text), origin, own_turn, &object);
+                self.alias(aliases, named, part_text, origin, own_turn, &object);
                 return Some(());
             }
             Some((Value::Failed, _)) => return None,
@@ -470,17 +470,24 @@ impl<'s> Lowerer<'s, '_> {
                 self.add_part(contributions, part.clone(), &own_turn, &placed, origin, axis, placement.less);
             }
         }
-        let _ = item;
-        self.alias(aliases, named.unwrap_or(part_text), base, frame, &object);
+        self.alias(aliases, named, part_text, base, frame, &object);
         Some(())
     }
 
-    fn alias(&mut self, aliases: &mut Vec<Alias>, name: SmolStr, origin: Vector, turn: Rotation, object: &Object) {
+    fn alias(
+        &mut self,
+        aliases: &mut Vec<Alias>,
+        named: Option<SmolStr>,
+        part: SmolStr,
+        origin: Vector,
+        turn: Rotation,
+        object: &Object,
+    ) {
         let density = match &object.entity {
             Entity::Body(body) => body.density,
             _ => None,
         };
-        aliases.push(Alias { name, origin, turn, density });
+        aliases.push(Alias { name: named.unwrap_or_else(|| part.clone()), part, origin, turn, density });
     }
 
     /// `turned = [(z, 30 deg), (x, 20 deg)]`.

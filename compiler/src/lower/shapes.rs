@@ -92,13 +92,7 @@ impl<'s> Lowerer<'s, '_> {
         }
     }
 
-    pub(super) fn shape_volume(
-        &mut self,
-        id: ItemId,
-        bound: &[(SmolStr, Value)],
-        place: Place,
-        _name: &SmolStr,
-    ) -> Option<NodeId> {
+    pub(super) fn shape_volume(&mut self, id: ItemId, bound: &[(SmolStr, Value)], place: Place) -> Option<NodeId> {
         let sheet = self.sheet;
         let ItemKind::Shape { members, .. } = &sheet.item(id)?.kind else { return None };
         if !members.iter().any(|field| word(field).as_deref() == Some("volume")) {

@@ -335,6 +335,7 @@ impl<'s> Lowerer<'s, '_> {
             sides: None,
             text: format!("{word} > 0"),
             owner: "link".into(),
+            results: Vec::new(),
             subject: fields.owner.clone(),
             place: typed.place,
             origin: typed.place,
@@ -446,7 +447,8 @@ impl<'s> Lowerer<'s, '_> {
                 sides: None,
                 text: "the ratios round the loop multiply to one".into(),
                 owner: format!("train `{}`", train.name),
-                subject: link.name.clone(),
+                results: Vec::new(),
+                subject: format!("{}.{}", train.name, link.name).into(),
                 place: link.place,
                 origin: link.place,
             });

@@ -165,7 +165,7 @@ impl<'s> Lowerer<'s, '_> {
         }
     }
 
-    fn warn(&mut self, warnings: &[TypeWarning], place: Place) {
+    pub(super) fn warn(&mut self, warnings: &[TypeWarning], place: Place) {
         for warning in warnings.iter().filter(|warning| !warning.code.is_note()) {
             let diagnostic =
                 Diagnostic::new(codes::SUSPECT_FACTOR, place, warning.message.clone()).with_help(warning.help.clone());

@@ -159,7 +159,7 @@ impl<'a> Reader<'a> {
         match (name, second) {
             ("sqrt", None) => Ok(first.sqrt()?),
             ("min" | "max", Some(second)) => Ok(first.common(&second)?),
-            ("exp" | "log", None) => {
+            ("exp" | "ln", None) => {
                 first.pure_number()?;
                 Ok(Type::number())
             }

@@ -12,8 +12,9 @@
 //!    in sheets: `1.2346e-5`.
 //! 5. No separators of thousands: a number can be copied back into a sheet.
 //!
-//! Knows numbers only; units and words are the callers'.
+//! Knows numbers and the units behind them; words are the callers'.
 
+use pintle_units::Unit;
 use std::cmp::Ordering;
 
 /// Digits that are rounded to, one more where the first digit is 1.
@@ -138,6 +139,24 @@ fn unusual(value: f64) -> &'static str {
         _ if value > 0.0 => "infinite",
         _ => "-infinite",
     }
+}
+
+/// A unit as it stands behind a number: nothing for pure numbers.
+pub(crate) fn unit_text(unit: &Unit) -> &str {
+    if unit.text == "1" { "" } else { &unit.text }
+}
+
+/// A number with its unit.
+pub(crate) fn with_unit(number: impl std::fmt::Display, unit: &Unit) -> String {
+    match unit_text(unit) {
+        "" => number.to_string(),
+        unit => format!("{number} {unit}"),
+    }
+}
+
+/// A value in SI, shown in `unit`.
+pub(crate) fn shown(si: f64, unit: &Unit) -> String {
+    with_unit(engineering(unit.from_si(si)), unit)
 }
 
 #[cfg(test)]
