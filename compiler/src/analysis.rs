@@ -194,7 +194,7 @@ impl Snapshot {
             )),
             None => markdown.push_str(&format!(": {}", quantity.status.word())),
         }
-        markdown.push_str(&format!("\n\n{}, {}", quantity.kind_words, quantity.status.word()));
+        markdown.push_str(&format!("\n\n{}, {}", quantity.kind_words(), quantity.status.word()));
         let node = model.quantity(quantity.id).node;
         let formula = formula(&model.graph, node).text(&|id| model.quantity(id).name.to_string(), &|input| {
             model.inputs.get(input as usize).map_or(String::new(), |input| input.text.to_string())

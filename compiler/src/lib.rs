@@ -31,7 +31,11 @@ use pintle_text::{Diagnostic, ItemId, Place, Severity};
 use results::{Assumption, Group, Results, SheetInfo};
 use smol_str::SmolStr;
 use source::{Files, Sources};
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, HashMap};
+
+/// A map with a quick hash and no random seed: its keys are names and numbers of
+/// a sheet, not an attacker's. Never iterate over it into output.
+type QuickMap<K, V> = HashMap<K, V, foldhash::fast::FixedState>;
 
 /// Whether open assumptions and uncited givens are errors.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -70,6 +74,9 @@ impl Compilation {
     }
 }
 
+/// Enough for the deepest nesting that the parser lets pass, in an unoptimised build.
+const STACK: usize = 64 << 20;
+
 /// A sheet that cannot be read.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct FileError {
@@ -89,15 +96,9 @@ pub fn compile(path: &str, files: &(dyn Files + Sync), options: &Options) -> Res
 
 /// Compiles a sheet's text; `path` names it and is where files beside it are looked for.
 pub fn compile_text(path: &str, text: &str, files: &(dyn Files + Sync), options: &Options) -> Compilation {
-    // Nesting is bounded, but callers' threads may have small stacks.
-    std::thread::scope(|scope| {
-        let work = || compile_here(path, text, files, options);
-        match std::thread::Builder::new().stack_size(64 << 20).spawn_scoped(scope, work) {
-            Ok(handle) => handle.join().unwrap_or_else(|panic| std::panic::resume_unwind(panic)),
-            // No thread to be had: the caller's stack must do.
-            Err(_) => compile_here(path, text, files, options),
-        }
-    })
+    // Nesting is bounded, but callers' threads may have small stacks. A stack, not a thread: a thread would get a
+    // heap of its own, whose pages come and go with it.
+    stacker::grow(STACK, || compile_here(path, text, files, options))
 }
 
 fn compile_here(path: &str, text: &str, files: &dyn Files, options: &Options) -> Compilation {

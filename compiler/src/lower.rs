@@ -19,13 +19,16 @@ mod loads;
 mod materials;
 mod quantities;
 mod reflected;
+mod rotor_members;
 mod rotors;
 mod shapes;
 pub mod space;
+mod templates;
 mod trains;
 mod typing;
 mod value;
 
+use crate::QuickMap;
 use crate::codes;
 use crate::model::Model;
 use crate::names::{Sheet, defined_name};
@@ -33,13 +36,15 @@ use crate::source::{Files, Origin};
 use pintle_graph::{Graph, InputId, NodeId, QuantityId};
 use pintle_syntax::ast::{Definition, Expr, Field, Item, ItemKind};
 use pintle_text::{Diagnostic, ItemId, Place, Span};
-use pintle_units::Unit;
+use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
-use std::collections::{BTreeMap, HashMap};
+use std::collections::BTreeMap;
+use std::sync::Arc;
 
 pub use calls::FUNCTIONS;
 pub use ledgers::{LedgerPlan, LinePlan};
 pub use limits::{ConfirmPlan, LimitPlan};
+use templates::{Template, TemplateKey};
 pub use value::{Condition, Typed, Value};
 
 /// What a case changes: the full name on the left, the value on the right.
@@ -67,12 +72,11 @@ pub struct Equation {
 pub struct Requirement {
     /// 1 where it holds.
     pub condition: NodeId,
-    /// The two sides, for the message.
-    pub sides: Option<(Typed, pintle_graph::CompareOp, Typed)>,
-    /// The condition as written.
-    pub text: String,
-    /// What asks for it: "shape `tube`", "formula `capstan`".
-    pub owner: String,
+    /// The two sides and the type of the left one, for the message.
+    pub sides: Option<(NodeId, NodeId, Type)>,
+    /// What asks for it, and what it asks: "train `haul`", "the ratios multiply to one".
+    /// None: the shape or formula at `origin`, the words that stand there.
+    pub words: Option<(String, String)>,
     /// The thing that breaks it.
     pub subject: SmolStr,
     /// What hangs on it: the results of a formula; none: all quantities named `SUBJECT.*`.
@@ -103,7 +107,7 @@ pub struct Lowered {
     /// Second routes.
     pub confirms: Vec<ConfirmPlan>,
     /// For each node that can lack a value, where it was written.
-    pub node_places: HashMap<NodeId, Place>,
+    pub node_places: QuickMap<NodeId, Place>,
     /// What was reported.
     pub diagnostics: Vec<Diagnostic>,
     /// What the sheet holds that calls for caution.
@@ -134,13 +138,19 @@ pub fn lower<'s>(sheet: &'s Sheet, overrides: &Overrides<'s>, case: &[SmolStr], 
         case,
         files,
         out: Lowered::default(),
-        entities: HashMap::new(),
+        entities: QuickMap::default(),
         open: Vec::new(),
-        units: HashMap::new(),
+        units: QuickMap::default(),
         used_overrides: Vec::new(),
         states: Vec::new(),
         reported_shapes: Vec::new(),
+        templates: QuickMap::default(),
+        constants_asked: 0,
+        scratch: String::new(),
     };
+    // Growing large tables costs more than a little room: a body has about twenty nodes, six of them named.
+    lowerer.out.model.graph.reserve(16 * sheet.order.len());
+    lowerer.out.model.quantities.reserve(5 * sheet.order.len());
     lowerer.run();
     lowerer.out
 }
@@ -151,14 +161,20 @@ pub(crate) struct Lowerer<'s, 'r> {
     case: &'r [SmolStr],
     files: &'r dyn Files,
     out: Lowered,
-    entities: HashMap<ItemId, Value>,
+    entities: QuickMap<ItemId, Value>,
     /// Items being lowered just now.
     open: Vec<ItemId>,
-    units: HashMap<(Origin, SmolStr), Option<Unit>>,
+    units: QuickMap<(Origin, SmolStr), Option<Arc<Unit>>>,
     used_overrides: Vec<SmolStr>,
     /// States of every problem: member's state name without the problem, and the full quantity.
     states: Vec<(SmolStr, QuantityId)>,
     reported_shapes: Vec<ItemId>,
+    /// Shapes read once, to be repeated.
+    templates: QuickMap<TemplateKey, Template>,
+    /// How often a value was asked for while building.
+    constants_asked: usize,
+    /// Where long names are put together.
+    scratch: String,
 }
 
 impl space::Arithmetic for Lowerer<'_, '_> {

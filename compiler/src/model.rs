@@ -1,11 +1,12 @@
 //! The checked sheet under one case: its graph and the table of its quantities.
 
+use crate::QuickMap;
 use crate::results::{Group, Shown};
 use pintle_graph::{Graph, InputId, NodeId, QuantityId};
 use pintle_text::Place;
 use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
-use std::collections::BTreeMap;
+use std::sync::{Arc, OnceLock};
 
 /// A named quantity.
 #[derive(Clone, Debug)]
@@ -21,7 +22,7 @@ pub struct Quantity {
     /// The node that carries its name.
     pub node: NodeId,
     /// The unit it is shown in.
-    pub unit: Unit,
+    pub unit: Arc<Unit>,
     /// Where it is defined.
     pub place: Place,
     /// Its source as cited.
@@ -87,8 +88,8 @@ pub struct Model {
     pub inputs: Vec<Input>,
     /// Value of every node, once solved.
     pub values: Vec<f64>,
-    /// Quantities by name.
-    pub by_name: BTreeMap<SmolStr, QuantityId>,
+    /// Quantities by name, once somebody asks.
+    by_name: OnceLock<QuickMap<SmolStr, QuantityId>>,
 }
 
 impl Model {
@@ -97,9 +98,16 @@ impl Model {
         &self.quantities[id.0 as usize]
     }
 
-    /// The quantity of that full name.
+    /// The quantity of that full name, the first of several. To be asked only when the sheet is complete.
     pub fn named(&self, name: &str) -> Option<QuantityId> {
-        self.by_name.get(name).copied()
+        let by_name = self.by_name.get_or_init(|| {
+            let mut by_name = QuickMap::default();
+            for (at, quantity) in self.quantities.iter().enumerate() {
+                by_name.entry(quantity.name.clone()).or_insert(QuantityId(at as u32));
+            }
+            by_name
+        });
+        by_name.get(name).copied()
     }
 
     /// Value of a node, once solved.

@@ -6,13 +6,13 @@
 
 mod references;
 
+use crate::QuickMap;
 use crate::codes;
 use crate::library;
 use crate::source::{Files, Origin, Source, Sources};
 use pintle_syntax::ast::{Item, ItemKind};
 use pintle_text::{Diagnostic, FileId, ItemId, LineIndex, Place, Span};
 use smol_str::SmolStr;
-use std::collections::HashMap;
 use std::sync::Arc;
 
 pub use references::references;
@@ -26,9 +26,9 @@ pub struct Sheet {
     pub order: Vec<ItemId>,
     /// Items of a circle of definitions; they have no value.
     pub circular: Vec<ItemId>,
-    own: HashMap<SmolStr, ItemId>,
-    imported: HashMap<SmolStr, ItemId>,
-    standard: HashMap<SmolStr, ItemId>,
+    own: QuickMap<SmolStr, ItemId>,
+    imported: QuickMap<SmolStr, ItemId>,
+    standard: QuickMap<SmolStr, ItemId>,
 }
 
 impl Sheet {
@@ -205,7 +205,7 @@ fn declare(sheet: &mut Sheet, imports: &[&str], acc: &mut Vec<Diagnostic>) {
             defined.push((name.text.clone(), id, name.span));
         }
     }
-    let mut first: HashMap<SmolStr, Place> = HashMap::new();
+    let mut first: QuickMap<SmolStr, Place> = QuickMap::default();
     for (name, item, span) in defined {
         let place = Place { item, span };
         if let Some(&earlier) = first.get(&name) {
@@ -240,7 +240,7 @@ fn order(sheet: &mut Sheet, acc: &mut Vec<Diagnostic>) {
         Open,
         Done,
     }
-    let mut marks: HashMap<ItemId, Mark> = HashMap::new();
+    let mut marks: QuickMap<ItemId, Mark> = QuickMap::default();
     let mut result = Vec::new();
     let mut circular = Vec::new();
     let roots: Vec<ItemId> = sheet.own_items().map(|(id, _)| id).collect();

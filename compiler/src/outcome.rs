@@ -5,6 +5,7 @@ mod facts;
 mod faults;
 mod solving;
 
+use crate::QuickMap;
 use crate::codes;
 use crate::lower::{ConfirmPlan, Hazards, LedgerPlan, LimitPlan, Lowered};
 use crate::model::{InputValue, Model};
@@ -16,7 +17,6 @@ use facts::NodeFacts;
 use pintle_graph::{CompareOp, InputId, Op, QuantityId};
 use pintle_solve::Outcome;
 use pintle_text::{Diagnostic, Place};
-use std::collections::HashMap;
 
 /// A computed value this near to a bound, relative, counts as equal to it:
 /// sums of decimals are not exact in binary.
@@ -27,7 +27,7 @@ pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (Ca
     let mut acc = std::mem::take(&mut lowered.diagnostics);
     let outcomes = solving::solve(&mut lowered, &mut acc);
     let facts = NodeFacts::new(&lowered, &outcomes);
-    faults::requirements(&lowered, &facts, &mut acc);
+    faults::requirements(sheet, &lowered, &facts, &mut acc);
     faults::lost_values(sheet, &lowered, &facts, &mut acc);
     // A tube whose bore exceeds its outside has no inertia, whatever its formula gives.
     for (value, _) in lowered.model.values.iter_mut().zip(&facts.broken).filter(|(_, broken)| **broken) {
@@ -35,6 +35,7 @@ pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (Ca
     }
     let line = |place: Place| sheet.sources.location(place).line;
     let mut results = CaseResults { case, ..CaseResults::default() };
+    results.quantities.reserve(lowered.model.quantities.len());
     for (index, quantity) in lowered.model.quantities.iter().enumerate() {
         if sheet.origin(quantity.place.item) == Origin::Standard {
             continue;
@@ -72,7 +73,7 @@ pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (Ca
     (results, lowered.model, acc)
 }
 
-type Outcomes = HashMap<QuantityId, Outcome>;
+type Outcomes = QuickMap<QuantityId, Outcome>;
 
 fn quantity_result(
     model: &Model,
@@ -110,10 +111,9 @@ fn quantity_result(
     }
     QuantityResult {
         id,
-        name: quantity.name.to_string(),
+        name: quantity.name.clone(),
         group: quantity.group,
-        kind: quantity.ty.kind,
-        kind_words: quantity.ty.kind.map_or_else(|| quantity.ty.words(), |kind| kind.words().to_string()),
+        ty: quantity.ty,
         si: if matches!(status, Status::OneOf(_)) { None } else { si },
         unit: quantity.unit.clone(),
         low,
@@ -124,7 +124,7 @@ fn quantity_result(
         shown: quantity.shown,
         place: quantity.place,
         line,
-        source: quantity.source.to_string(),
+        source: quantity.source.clone(),
     }
 }
 

@@ -3,7 +3,10 @@
 
 use pintle_graph::QuantityId;
 use pintle_text::Place;
-use pintle_units::{Kind, Unit};
+use pintle_units::{Type, Unit};
+use smol_str::SmolStr;
+use std::borrow::Cow;
+use std::sync::Arc;
 
 /// The title block.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -132,17 +135,15 @@ pub struct QuantityResult {
     /// Its identity in the model of its case.
     pub id: QuantityId,
     /// Full dotted name.
-    pub name: String,
+    pub name: SmolStr,
     /// What it belongs to.
     pub group: Group,
-    /// Its kind, where it has a named one.
-    pub kind: Option<Kind>,
-    /// Its kind in words; also for quantities without a named kind.
-    pub kind_words: String,
+    /// Dimension, angle exponent and kind.
+    pub ty: Type,
     /// Value in coherent SI units; None where it is not known.
     pub si: Option<f64>,
     /// The unit that it is shown in.
-    pub unit: Unit,
+    pub unit: Arc<Unit>,
     /// Guaranteed worst case, SI; None where no tolerance enters or it is not computed.
     pub low: Option<f64>,
     /// Upper end of the same.
@@ -160,7 +161,17 @@ pub struct QuantityResult {
     /// Line in its file, from 1.
     pub line: usize,
     /// Its source as cited; empty where none is.
-    pub source: String,
+    pub source: SmolStr,
+}
+
+impl QuantityResult {
+    /// Its kind in words; also for quantities without a named kind.
+    pub fn kind_words(&self) -> Cow<'static, str> {
+        match self.ty.kind {
+            Some(kind) => kind.words().into(),
+            None => self.ty.words().into(),
+        }
+    }
 }
 
 /// One ledger.
@@ -282,7 +293,7 @@ pub struct LimitResult {
     /// Right side in SI.
     pub bound: Option<f64>,
     /// Unit to show both in.
-    pub unit: Unit,
+    pub unit: Arc<Unit>,
     /// Distance to the bound as a share of the bound, positive where met; None where the bound is zero.
     pub margin: Option<f64>,
     /// Worst case of the left side, SI.
@@ -315,7 +326,7 @@ pub struct ConfirmResult {
     /// Half-width of the agreement asked for, SI.
     pub half_width: Option<f64>,
     /// Unit to show them in.
-    pub unit: Unit,
+    pub unit: Arc<Unit>,
     /// Whether they agree; None where one is not known.
     pub agrees: Option<bool>,
     /// `cite`.

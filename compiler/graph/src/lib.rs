@@ -14,7 +14,6 @@
 mod derivative;
 mod eigen;
 mod formula;
-mod hash;
 mod node;
 mod part;
 mod value;

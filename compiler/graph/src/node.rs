@@ -1,7 +1,12 @@
 //! The arena: nodes, and how they are made.
 
-use crate::hash::QuickMap;
+use hashbrown::HashTable;
 use smol_str::SmolStr;
+use std::collections::HashMap;
+use std::hash::BuildHasher;
+
+/// A map with a quick hash and no random seed. Never iterate over it into output.
+type QuickMap<K, V> = HashMap<K, V, foldhash::fast::FixedState>;
 
 /// A node of the graph.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
@@ -124,22 +129,62 @@ pub enum Op {
     PrincipalAxis(TensorId, u8, u8),
 }
 
+impl Op {
+    /// The same operation on other operands. The six members behind a tensor are the graph's and stay.
+    pub fn with_operands(self, mut f: impl FnMut(NodeId) -> NodeId) -> Op {
+        match self {
+            Op::Literal(_) | Op::Input(_) | Op::PrincipalMoment(..) | Op::PrincipalAxis(..) => self,
+            Op::Quantity(quantity, a) => Op::Quantity(quantity, f(a)),
+            Op::Add(a, b) => Op::Add(f(a), f(b)),
+            Op::Subtract(a, b) => Op::Subtract(f(a), f(b)),
+            Op::Multiply(a, b) => Op::Multiply(f(a), f(b)),
+            Op::Divide(a, b) => Op::Divide(f(a), f(b)),
+            Op::Power(a, num, den) => Op::Power(f(a), num, den),
+            Op::PowerOf(a, b) => Op::PowerOf(f(a), f(b)),
+            Op::Apply(function, a) => Op::Apply(function, f(a)),
+            Op::Atan2(a, b) => Op::Atan2(f(a), f(b)),
+            Op::Min(a, b) => Op::Min(f(a), f(b)),
+            Op::Max(a, b) => Op::Max(f(a), f(b)),
+            Op::Compare(compare, a, b) => Op::Compare(compare, f(a), f(b)),
+            Op::And(a, b) => Op::And(f(a), f(b)),
+            Op::Or(a, b) => Op::Or(f(a), f(b)),
+            Op::Select(c, a, b) => Op::Select(f(c), f(a), f(b)),
+        }
+    }
+}
+
 /// The arena of nodes with its tables.
 #[derive(Clone, Debug, Default)]
 pub struct Graph {
     ops: Vec<Op>,
-    known: QuickMap<Op, NodeId>,
+    /// By what they do. Holds numbers only, the operations stand in `ops`: a table of a large sheet stays in cache.
+    known: HashTable<NodeId>,
     literals: Vec<(f64, SmolStr)>,
     literals_known: QuickMap<(u64, SmolStr), LiteralId>,
     n_inputs: u32,
     tensors: Vec<[NodeId; 6]>,
     tensors_known: QuickMap<[NodeId; 6], TensorId>,
+    usual: [Option<NodeId>; USUAL.len()],
+}
+
+/// Numbers that formulas are full of; [`Graph::plain_number`] remembers their nodes.
+const USUAL: [(f64, &str); 6] = [(0.0, "0"), (1.0, "1"), (2.0, "2"), (0.5, "0.5"), (-1.0, "-1"), (4.0, "4")];
+
+fn hash(op: &Op) -> u64 {
+    foldhash::fast::FixedState::default().hash_one(op)
 }
 
 impl Graph {
     /// An empty graph.
     pub fn new() -> Graph {
         Graph::default()
+    }
+
+    /// Room for about as many further nodes.
+    pub fn reserve(&mut self, nodes: usize) {
+        self.ops.reserve(nodes);
+        let ops = &self.ops;
+        self.known.reserve(nodes, |node| hash(&ops[node.index()]));
     }
 
     /// Number of nodes.
@@ -180,12 +225,14 @@ impl Graph {
 
     /// The node that does `op`, made if there is none yet.
     pub fn add(&mut self, op: Op) -> NodeId {
-        if let Some(&node) = self.known.get(&op) {
-            return node;
+        let ops = &mut self.ops;
+        let entry = self.known.entry(hash(&op), |node| ops[node.index()] == op, |node| hash(&ops[node.index()]));
+        if let hashbrown::hash_table::Entry::Occupied(known) = entry {
+            return *known.get();
         }
-        let node = NodeId(self.ops.len() as u32);
-        self.ops.push(op);
-        self.known.insert(op, node);
+        let node = NodeId(ops.len() as u32);
+        entry.insert(node);
+        ops.push(op);
         node
     }
 
@@ -236,6 +283,21 @@ impl Graph {
             }
         };
         self.add(Op::Literal(literal))
+    }
+
+    /// An exact number without a unit.
+    pub fn plain_number(&mut self, value: f64) -> NodeId {
+        let Some(at) = USUAL.iter().position(|(usual, _)| usual.to_bits() == value.to_bits()) else {
+            let whole = value == value.trunc() && value.abs() < 1e15;
+            let text = if whole { format!("{value:.0}") } else { format!("{value}") };
+            return self.number(value, &text);
+        };
+        if let Some(node) = self.usual[at] {
+            return node;
+        }
+        let node = self.number(value, USUAL[at].1);
+        self.usual[at] = Some(node);
+        node
     }
 
     /// The tensor of six members xx, yy, zz, xy, xz, yz.

@@ -115,28 +115,13 @@ impl<'g> Parts<'g> {
             });
             let local = |node: NodeId| self.local[node.index()];
             let op = match op {
-                Op::Literal(_) | Op::Input(_) => op,
-                Op::Quantity(quantity, a) => Op::Quantity(quantity, local(a)),
-                Op::Add(a, b) => Op::Add(local(a), local(b)),
-                Op::Subtract(a, b) => Op::Subtract(local(a), local(b)),
-                Op::Multiply(a, b) => Op::Multiply(local(a), local(b)),
-                Op::Divide(a, b) => Op::Divide(local(a), local(b)),
-                Op::Power(a, num, den) => Op::Power(local(a), num, den),
-                Op::PowerOf(a, b) => Op::PowerOf(local(a), local(b)),
-                Op::Apply(function, a) => Op::Apply(function, local(a)),
-                Op::Atan2(a, b) => Op::Atan2(local(a), local(b)),
-                Op::Min(a, b) => Op::Min(local(a), local(b)),
-                Op::Max(a, b) => Op::Max(local(a), local(b)),
-                Op::Compare(compare, a, b) => Op::Compare(compare, local(a), local(b)),
-                Op::And(a, b) => Op::And(local(a), local(b)),
-                Op::Or(a, b) => Op::Or(local(a), local(b)),
-                Op::Select(c, a, b) => Op::Select(local(c), local(a), local(b)),
                 Op::PrincipalMoment(tensor, rank) => {
                     Op::PrincipalMoment(part.push_tensor(graph.tensor(tensor).map(local)), rank)
                 }
                 Op::PrincipalAxis(tensor, rank, component) => {
                     Op::PrincipalAxis(part.push_tensor(graph.tensor(tensor).map(local)), rank, component)
                 }
+                other => other.with_operands(local),
             };
             self.moved[node.index()] = round;
             self.seen[node.index()] = round;

@@ -3,8 +3,8 @@
 //! Elementary functions come from libm, so that results are the same bytes on
 //! every machine.
 
-use crate::hash::QuickSet;
 use crate::{Function, Graph, InputId, NodeId, Op, principal};
+use std::collections::HashSet;
 
 /// Values of all nodes for the given inputs. A missing input is NaN.
 pub fn evaluate(graph: &Graph, inputs: &[f64]) -> Vec<f64> {
@@ -30,7 +30,7 @@ pub fn value_of(graph: &Graph, node: NodeId, inputs: &[f64]) -> f64 {
 /// As [`value_of`], asking for the inputs that are needed. Costs what lies below the node, however large the graph.
 pub fn value_with(graph: &Graph, node: NodeId, input: impl Fn(InputId) -> f64) -> f64 {
     let mut needed = vec![node];
-    let mut seen = QuickSet::default();
+    let mut seen = HashSet::<NodeId, foldhash::fast::FixedState>::default();
     seen.insert(node);
     let mut next = 0;
     while let Some(&open) = needed.get(next) {

@@ -7,7 +7,7 @@ use super::value::{Entity, Object, Typed, Value};
 use super::{Env, Lowerer};
 use crate::codes;
 use crate::results::{Group, Shown};
-use pintle_graph::NodeId;
+use pintle_graph::{NodeId, Op};
 use pintle_syntax::ast::{Field, Item, ItemKind, Name, Path};
 use pintle_text::{Diagnostic, ItemId, Place};
 use smol_str::SmolStr;
@@ -193,12 +193,11 @@ impl<'s> Lowerer<'s, '_> {
         if measured || owns_mass || mass.is_some() {
             let source = self.source(&item.clauses).unwrap_or_default();
             let Some(properties) = self.properties(&body, mass) else { return Value::Failed };
-            // A stated mass is already in the table under this name.
-            let known = self.out.model.named(&format!("{}.mass", body.name)).filter(|_| measured);
-            let mass_value = match (&stated_mass, known) {
+            // A measured mass is already in the table under this name.
+            let mass_value = match (&stated_mass, measured) {
                 (Some(typed), _) => Value::Number(typed.clone()),
-                (None, Some(_)) => Value::Number(Typed { node: properties.mass, ty: self.kind_type("mass"), place }),
-                (None, None) => self.body_member(&body, "mass", "mass", properties.mass),
+                (None, true) => Value::Number(Typed { node: properties.mass, ty: self.kind_type("mass"), place }),
+                (None, false) => self.body_member(&body, "mass", "mass", properties.mass),
             };
             members.push(("mass".into(), mass_value.clone()));
             if let (Some(density), true) = (density_node, density.is_none()) {
@@ -220,6 +219,12 @@ impl<'s> Lowerer<'s, '_> {
                     tensor[0] = typed.node;
                 }
             }
+            if let (Value::Number(typed), false) = (&moment, source.is_empty())
+                && let Op::Quantity(id, _) = self.out.model.graph.op(typed.node)
+                && let Some(quantity) = self.out.model.quantities.get_mut(id.0 as usize)
+            {
+                quantity.source = source;
+            }
             members.push(("J".into(), moment.clone()));
             members.push(("J_axis".into(), moment.clone()));
             members.push(("J_x".into(), moment));
@@ -239,12 +244,6 @@ impl<'s> Lowerer<'s, '_> {
             if let Some(reach) = properties.outer_radius {
                 members.push(("outer_radius".into(), self.body_member(&body, "outer_radius", "radius", reach)));
             }
-            if !source.is_empty()
-                && let Some(id) = self.out.model.named(&format!("{}.J", body.name))
-                && let Some(quantity) = self.out.model.quantities.get_mut(id.0 as usize)
-            {
-                quantity.source = source;
-            }
             body.properties = Some(properties);
         }
         Value::Object(Rc::new(Object { name: name.text.clone(), what: "a body", members, entity: Entity::Body(body) }))
@@ -255,17 +254,17 @@ impl<'s> Lowerer<'s, '_> {
     }
 
     fn body_member(&mut self, body: &Body, word: &str, kind: &str, node: NodeId) -> Value {
-        let name = format!("{}.{word}", body.name);
-        self.built_in(name, Group::Body, Shown::OnRequest, kind, node, body.place)
+        self.built_in(&[&body.name, word], Group::Body, Shown::OnRequest, kind, node, body.place)
     }
 
     fn centre_value(&mut self, owner: &str, centre: Vector, place: Place) -> Value {
         let members = ["x", "y", "z"].into_iter().zip(centre).map(|(word, node)| {
-            let name = format!("{owner}.centre.{word}");
-            (word.into(), self.built_in(name, Group::Body, Shown::OnRequest, "length", node, place))
+            let name = [owner, "centre", word];
+            (word.into(), self.built_in(&name, Group::Body, Shown::OnRequest, "length", node, place))
         });
         let members = members.collect();
-        Value::plain(format!("{owner}.centre"), "a point", members)
+        let name = self.dotted(&[owner, "centre"]);
+        Value::plain(name, "a point", members)
     }
 
     fn material_density(&mut self, fields: &mut Fields<'s>) -> Option<Typed> {
@@ -434,9 +433,8 @@ impl<'s> Lowerer<'s, '_> {
         }
         let mut inner = self.env(id);
         inner.locals.clone_from(&bound);
-        let owner = format!("shape `{}`", shape_name.text);
         let (subject, place) = (fields.owner.clone(), fields.place);
-        self.requirements(&mut inner, requirements, &owner, subject, place, id);
+        self.requirements(&mut inner, requirements, subject, place, id);
         Some((Form::Shape(id, bound.clone()), bound))
     }
 

@@ -359,8 +359,7 @@ impl<'s> Lowerer<'s, '_> {
         self.out.requirements.push(Requirement {
             condition,
             sides: None,
-            text: "the outline encloses an area".into(),
-            owner: "outline".into(),
+            words: Some(("outline".into(), "the outline encloses an area".into())),
             results: Vec::new(),
             subject: fields.owner.clone(),
             place: fields.place,

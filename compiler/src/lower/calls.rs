@@ -367,7 +367,7 @@ impl<'s> Lowerer<'s, '_> {
             }
             env.define(segment.name.text.clone(), last.clone());
         }
-        self.requirements(env, requirements, &format!("formula `{name}`"), name.clone(), place, id);
+        self.requirements(env, requirements, name.clone(), place, id);
         if let Some(definition) = value {
             last = self.definition(env, definition);
         }
@@ -484,19 +484,16 @@ impl<'s> Lowerer<'s, '_> {
         &mut self,
         env: &mut Env,
         requirements: &[Expr],
-        owner: &str,
         subject: SmolStr,
         place: Place,
         origin: ItemId,
     ) {
         for requirement in requirements {
             if let Some(condition) = self.condition(env, requirement) {
-                let text = self.expr_text(env, requirement);
                 self.out.requirements.push(Requirement {
                     condition: condition.node,
-                    sides: condition.sides,
-                    text,
-                    owner: owner.to_string(),
+                    sides: condition.sides.map(|(left, _, right)| (left.node, right.node, left.ty)),
+                    words: None,
                     subject: subject.clone(),
                     results: Vec::new(),
                     place,

@@ -526,6 +526,7 @@ impl<'s> Lowerer<'s, '_> {
 
     /// The value of a node that depends on no unknown.
     pub(super) fn constant(&mut self, node: NodeId) -> Option<f64> {
+        self.constants_asked += 1;
         if let Some(value) = self.known(node) {
             return Some(value);
         }

@@ -142,7 +142,7 @@ impl<'s> Lowerer<'s, '_> {
         group: Group,
     ) -> Option<Typed> {
         let definition = field.value.as_ref()?;
-        let full: SmolStr = format!("{}.{name}", fields.owner).into();
+        let full = self.dotted(&[&fields.owner, name]);
         let source = self.source(&field.clauses).or_else(|| self.source(fields.clauses)).unwrap_or_default();
         let place = env.place(field.span);
         let unit = self.display(env, &field.clauses);

@@ -253,8 +253,8 @@ impl<'s> Lowerer<'s, '_> {
                 let driven = self.times(reverse, share);
                 // Of the two laws the one in force is the greater: each is negative on the other's side.
                 let loss = self.out.model.graph.add(Op::Max(driving, driven));
-                let name = format!("{}.{}.loss", draft.name, link.name);
-                let value = self.built_in(name, Group::Ledger, Shown::OnRequest, "energy", loss, place);
+                let name = [draft.name.as_str(), &link.name, "loss"];
+                let value = self.built_in(&name, Group::Ledger, Shown::OnRequest, "energy", loss, place);
                 let loss = match &value {
                     Value::Number(typed) => typed.node,
                     _ => loss,

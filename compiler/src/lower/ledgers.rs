@@ -12,11 +12,13 @@ use super::value::{Entity, Object, Typed, Value};
 use super::{Env, Equation, Lowerer};
 use crate::codes;
 use crate::results::{Group, Shown, Side};
-use pintle_graph::NodeId;
+use pintle_graph::{NodeId, QuantityId};
 use pintle_syntax::ast::{ExprKind, Field, LedgerLine, LedgerLineKind, Name, Path, Segment, StateSpec, Wanted};
 use pintle_text::{Diagnostic, Place};
+use pintle_units::Unit;
 use smol_str::SmolStr;
 use std::rc::Rc;
+use std::sync::{Arc, OnceLock};
 
 /// What results need to know of a ledger.
 #[derive(Clone, Debug)]
@@ -75,6 +77,8 @@ pub struct LedgerEntity {
 /// A ledger being put together.
 pub(super) struct Draft {
     pub name: SmolStr,
+    /// Where the ledger's own quantities begin in the table.
+    pub first_quantity: usize,
     pub train: Train,
     pub start: Option<NodeId>,
     pub end: Option<NodeId>,
@@ -125,6 +129,7 @@ impl<'s> Lowerer<'s, '_> {
         self.out.hazards.stored_energy = true;
         let n = train.members.len();
         let mut draft = Draft {
+            first_quantity: self.out.model.quantities.len(),
             name: name.text.clone(),
             plan: LedgerPlan {
                 name: name.text.clone(),
@@ -439,7 +444,7 @@ impl<'s> Lowerer<'s, '_> {
             let prefix = format!("{}.{}", draft.name, member.name);
             let mut state: Vec<(SmolStr, Value)> = Vec::new();
             let end_speed = self.times(end, member.coefficient);
-            let speed = self.state_quantity(&prefix, "speed", speed_kind, end_speed, place, &member.name);
+            let speed = self.state_quantity(draft, &prefix, "speed", speed_kind, end_speed, place, &member.name);
             let end_node = match &speed {
                 Value::Number(typed) => typed.node,
                 _ => end_speed,
@@ -455,7 +460,7 @@ impl<'s> Lowerer<'s, '_> {
                 this.times(half, product)
             };
             let (before, after) = (energy(self, start_node), energy(self, end_node));
-            let kinetic = self.state_quantity(&prefix, "kinetic", "energy", after, place, &member.name);
+            let kinetic = self.state_quantity(draft, &prefix, "kinetic", "energy", after, place, &member.name);
             let after = match &kinetic {
                 Value::Number(typed) => typed.node,
                 _ => after,
@@ -474,14 +479,14 @@ impl<'s> Lowerer<'s, '_> {
                 let node = self.times(travel, member.coefficient);
                 state.push((
                     travel_word.into(),
-                    self.state_quantity(&prefix, travel_word, travel_kind, node, place, &member.name),
+                    self.state_quantity(draft, &prefix, travel_word, travel_kind, node, place, &member.name),
                 ));
             }
             if let MemberKind::Rotor(_, Some(reach)) = &member.kind {
                 let node = self.times(end_node, *reach);
                 state.push((
                     "rim_speed".into(),
-                    self.state_quantity(&prefix, "rim_speed", "speed", node, place, &member.name),
+                    self.state_quantity(draft, &prefix, "rim_speed", "speed", node, place, &member.name),
                 ));
             }
             // Inside the ledger the member is its state and, behind it, itself.
@@ -521,8 +526,10 @@ impl<'s> Lowerer<'s, '_> {
         }
     }
 
+    #[allow(clippy::too_many_arguments)]
     fn state_quantity(
         &mut self,
+        draft: &Draft,
         prefix: &str,
         word: &str,
         kind: &str,
@@ -530,32 +537,24 @@ impl<'s> Lowerer<'s, '_> {
         place: Place,
         member: &SmolStr,
     ) -> Value {
-        let full: SmolStr = format!("{prefix}.{word}").into();
-        let state: SmolStr = format!("{member}.{word}").into();
+        let full = self.dotted(&[prefix, word]);
+        let state = self.dotted(&[member, word]);
         // An unknown already stands in the table under this name.
-        if let Some(id) = self.out.model.named(&full) {
-            self.states.push((state, id));
-            let quantity = self.out.model.quantity(id);
-            let typed = Typed { node: quantity.node, ty: quantity.ty, place };
-            return Value::Number(typed);
+        let first = draft.first_quantity;
+        let known = self.out.model.quantities.iter().skip(first).position(|quantity| quantity.name == full);
+        if let Some(at) = known {
+            self.states.push((state, QuantityId((first + at) as u32)));
+            let quantity = &self.out.model.quantities[first + at];
+            return Value::Number(Typed { node: quantity.node, ty: quantity.ty, place });
         }
         let ty = self.kind_type(kind);
         // Whole runs of a shaft are counted in revolutions, not in degrees.
-        let unit = if kind == "angle" { pintle_units::parse("rev", &|_| None).ok() } else { None };
-        let value = Value::Number(self.quantity(
-            full.clone(),
-            Group::Ledger,
-            Shown::Always,
-            ty,
-            node,
-            unit,
-            place,
-            SmolStr::default(),
-        ));
-        if let Some(id) = self.out.model.named(&full) {
-            self.states.push((state, id));
-        }
-        value
+        static TURNS: OnceLock<Option<Arc<Unit>>> = OnceLock::new();
+        let turns = || TURNS.get_or_init(|| pintle_units::parse("rev", &|_| None).ok().map(Arc::new)).clone();
+        let unit = if kind == "angle" { turns() } else { None };
+        self.states.push((state, QuantityId(self.out.model.quantities.len() as u32)));
+        let source = SmolStr::default();
+        Value::Number(self.quantity(full, Group::Ledger, Shown::Always, ty, node, unit, place, source))
     }
 }
 

@@ -8,6 +8,7 @@ use pintle_syntax::ast::{Clauses, Expr, ExprKind, Item};
 use pintle_text::{Diagnostic, ItemId, Place};
 use pintle_units::Unit;
 use smol_str::SmolStr;
+use std::sync::Arc;
 
 /// A limit, to be judged once values are there.
 #[derive(Clone, Debug)]
@@ -21,7 +22,7 @@ pub struct LimitPlan {
     /// Right side.
     pub bound: NodeId,
     /// Unit to show both in.
-    pub unit: Unit,
+    pub unit: Arc<Unit>,
     /// `because`.
     pub because: String,
     /// `cite`.
@@ -42,7 +43,7 @@ pub struct ConfirmPlan {
     /// Half-width of the agreement, SI; None: to rounding.
     pub half_width: Option<f64>,
     /// Unit to show them in.
-    pub unit: Unit,
+    pub unit: Arc<Unit>,
     /// `cite`.
     pub source: String,
     /// Where.

@@ -10,12 +10,13 @@ use pintle_syntax::ast::{Definition, Expr, ExprKind, ItemKind, Literal, Toleranc
 use pintle_text::{Diagnostic, Place};
 use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
+use std::sync::Arc;
 
 /// A literal, read.
 #[derive(Clone, Debug)]
 pub(super) struct Read {
     pub si: f64,
-    pub unit: Option<Unit>,
+    pub unit: Option<Arc<Unit>>,
     pub ty: Type,
     pub tolerance: Option<InputTolerance>,
     /// Number and unit, for formulas.
@@ -105,7 +106,7 @@ impl<'s> Lowerer<'s, '_> {
             None => literal.number.clone(),
         };
         let tolerance = match &literal.tolerance {
-            Some(tolerance) => self.tolerance(env, tolerance, value, si, unit.as_ref(), literal)?,
+            Some(tolerance) => self.tolerance(env, tolerance, value, si, unit.as_deref(), literal)?,
             None => None,
         };
         Some(Read { si, unit, ty, tolerance, text })
@@ -203,7 +204,7 @@ impl<'s> Lowerer<'s, '_> {
             Some(text) => Some(self.unit(env, text)?),
             None => None,
         };
-        if percent(own_unit.as_ref()) {
+        if percent(own_unit.as_deref()) {
             if offset || percent(unit) {
                 let what = if offset { "a temperature" } else { "a percentage" };
                 self.report(
@@ -244,7 +245,7 @@ impl<'s> Lowerer<'s, '_> {
     }
 
     /// A unit as written, read once a file.
-    pub(super) fn unit(&mut self, env: &Env, text: &UnitText) -> Option<Unit> {
+    pub(super) fn unit(&mut self, env: &Env, text: &UnitText) -> Option<Arc<Unit>> {
         let key = (env.origin, text.text.clone());
         if let Some(known) = self.units.get(&key).cloned() {
             if known.is_none() {
@@ -258,12 +259,12 @@ impl<'s> Lowerer<'s, '_> {
         unit
     }
 
-    fn read_unit(&mut self, env: &Env, text: &UnitText) -> Option<Unit> {
+    fn read_unit(&mut self, env: &Env, text: &UnitText) -> Option<Arc<Unit>> {
         let declared = self.declared_units(env.origin, text);
         match pintle_units::parse(&text.text, &|name| {
             declared.iter().find(|(known, _)| known == name).map(|(_, unit)| unit.clone())
         }) {
-            Ok(unit) => Some(unit),
+            Ok(unit) => Some(Arc::new(unit)),
             Err(error) => {
                 let place = env.place(text.span);
                 let diagnostic = self.unit_error(env, text, place, error);

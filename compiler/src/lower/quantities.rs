@@ -11,6 +11,7 @@ use pintle_syntax::ast::{BinaryOp, Cite, Clauses, Definition, Expr, ExprKind, It
 use pintle_text::{Diagnostic, Place};
 use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
+use std::sync::Arc;
 
 impl<'s> Lowerer<'s, '_> {
     /// Enters a quantity in the table and names its node.
@@ -22,7 +23,7 @@ impl<'s> Lowerer<'s, '_> {
         shown: Shown,
         ty: Type,
         node: NodeId,
-        unit: Option<Unit>,
+        unit: Option<Arc<Unit>>,
         place: Place,
         source: SmolStr,
     ) -> Typed {
@@ -35,15 +36,27 @@ impl<'s> Lowerer<'s, '_> {
             input.quantity.get_or_insert(id);
         }
         let unit = unit.unwrap_or_else(|| pintle_units::display_unit(&ty));
-        self.out.model.by_name.entry(name.clone()).or_insert(id);
         self.out.model.quantities.push(Quantity { name, group, shown, ty, node, unit, place, source });
         Typed { node, ty, place }
+    }
+
+    /// The parts of a name with dots between them. Every member of every thing has such a name,
+    /// which makes the formatting machinery worth avoiding.
+    pub(super) fn dotted(&mut self, parts: &[&str]) -> SmolStr {
+        self.scratch.clear();
+        for (at, part) in parts.iter().enumerate() {
+            if at > 0 {
+                self.scratch.push('.');
+            }
+            self.scratch.push_str(part);
+        }
+        SmolStr::new(&self.scratch)
     }
 
     /// A quantity of a built-in formula, with its kind.
     pub(super) fn built_in(
         &mut self,
-        name: impl Into<SmolStr>,
+        name: &[&str],
         group: Group,
         shown: Shown,
         kind: &str,
@@ -51,7 +64,8 @@ impl<'s> Lowerer<'s, '_> {
         place: Place,
     ) -> Value {
         let ty = self.kind_type(kind);
-        Value::Number(self.quantity(name.into(), group, shown, ty, node, None, place, SmolStr::default()))
+        let name = self.dotted(name);
+        Value::Number(self.quantity(name, group, shown, ty, node, None, place, SmolStr::default()))
     }
 
     /// Its source as cited, in words.
@@ -63,13 +77,13 @@ impl<'s> Lowerer<'s, '_> {
     }
 
     /// The unit behind `as`.
-    pub(super) fn display(&mut self, env: &Env, clauses: &Clauses) -> Option<Unit> {
+    pub(super) fn display(&mut self, env: &Env, clauses: &Clauses) -> Option<Arc<Unit>> {
         let text = clauses.display.as_ref()?;
         self.unit(env, text)
     }
 
     /// The `as` unit if it fits the type; a report if not.
-    fn checked_display(&mut self, env: &Env, clauses: &Clauses, typed: &Typed) -> Option<Unit> {
+    fn checked_display(&mut self, env: &Env, clauses: &Clauses, typed: &Typed) -> Option<Arc<Unit>> {
         let unit = self.display(env, clauses)?;
         if self.unit_fits(&unit, &typed.ty) {
             return Some(unit);
@@ -293,7 +307,7 @@ impl<'s> Lowerer<'s, '_> {
         full: &str,
         ty: Type,
         declared: Option<(f64, f64)>,
-        unit: Option<Unit>,
+        unit: Option<Arc<Unit>>,
         place: Place,
         group: Group,
     ) -> Typed {
@@ -325,7 +339,7 @@ impl<'s> Lowerer<'s, '_> {
     }
 
     /// `a .. b`: the type of both, the unit of the first, the ends in SI.
-    pub(super) fn range(&mut self, env: &mut Env, range: &Range) -> Option<(Typed, Option<Unit>, f64, f64)> {
+    pub(super) fn range(&mut self, env: &mut Env, range: &Range) -> Option<(Typed, Option<Arc<Unit>>, f64, f64)> {
         let (low, high) = (self.number(env, &range.low), self.number(env, &range.high));
         let (low, high) = (low?, high?);
         let ty = self.compared(&low, &high, env.place(range.low.span.to(range.high.span)))?;

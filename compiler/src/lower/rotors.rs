@@ -1,8 +1,5 @@
 //! Rotors: parts put together on an axis.
 //!
-//! Moments are summed part by part about the axis or centre asked for
-//! (parallel-axis theorem, J = J_c + m a^2; mechanics handbooks), so nothing
-//! large is subtracted from anything large.
 
 use super::axes::Axis;
 use super::bodies::Body;
@@ -11,12 +8,11 @@ use super::space::{Arithmetic, Rotation, Tensor, Vector};
 use super::value::{Entity, Object, Typed, Value};
 use super::{Env, Lowerer};
 use crate::codes;
-use crate::results::{Group, Shown};
-use pintle_graph::{NodeId, Op};
+use crate::results::Group;
+use pintle_graph::NodeId;
 use pintle_syntax::ast::{Name, Placement};
 use pintle_text::{Diagnostic, Place};
 use smol_str::SmolStr;
-use std::rc::Rc;
 
 /// What one part brings, in the sheet's frame; removed material has negative mass.
 #[derive(Clone, Debug)]
@@ -97,228 +93,7 @@ impl<'s> Lowerer<'s, '_> {
         if !fine || contributions.is_empty() {
             return Value::Failed;
         }
-        self.rotor_of(name, place, axis, contributions)
-    }
-
-    fn rotor_of(&mut self, name: &Name, place: Place, axis: Axis, contributions: Vec<Contribution>) -> Value {
-        let owner = name.text.clone();
-        let mut members: Vec<(SmolStr, Value)> = Vec::new();
-        let masses: Vec<NodeId> = contributions.iter().map(|part| part.mass).collect();
-        let mass = self.sum(&masses);
-        let mass_value = self.built_in(format!("{owner}.mass"), Group::Rotor, Shown::Always, "mass", mass, place);
-        let mass = node_of(&mass_value, mass);
-        members.push(("mass".into(), mass_value));
-        let moment = self.axial_moment(&contributions, &axis);
-        let moment_value =
-            self.built_in(format!("{owner}.J"), Group::Rotor, Shown::Always, "moment_of_inertia", moment, place);
-        let moment = node_of(&moment_value, moment);
-        members.push(("J".into(), moment_value));
-        let mut centre = self.origin();
-        for (at, slot) in centre.iter_mut().enumerate() {
-            let terms: Vec<NodeId> = contributions.iter().map(|part| self.times(part.mass, part.centre[at])).collect();
-            let sum = self.sum(&terms);
-            *slot = self.over(sum, mass);
-        }
-        let mut centre_members = Vec::new();
-        for (at, word) in ["x", "y", "z"].into_iter().enumerate() {
-            let value = self.built_in(
-                format!("{owner}.centre.{word}"),
-                Group::Rotor,
-                Shown::OnRequest,
-                "length",
-                centre[at],
-                place,
-            );
-            centre[at] = node_of(&value, centre[at]);
-            centre_members.push((word.into(), value));
-        }
-        members.push(("centre".into(), Value::plain(format!("{owner}.centre"), "a point", centre_members)));
-        let radius = self.over(moment, mass);
-        let radius = self.root(radius);
-        members.push((
-            "gyration_radius".into(),
-            self.built_in(
-                format!("{owner}.gyration_radius"),
-                Group::Rotor,
-                Shown::OnRequest,
-                "gyration_radius",
-                radius,
-                place,
-            ),
-        ));
-        let reaches: Vec<NodeId> = contributions.iter().filter_map(|part| part.reach).collect();
-        let mut reach = None;
-        for node in reaches {
-            reach = Some(match reach {
-                None => node,
-                Some(so_far) if so_far == node => node,
-                Some(so_far) => self.out.model.graph.add(Op::Max(so_far, node)),
-            });
-        }
-        if let Some(node) = reach {
-            let value =
-                self.built_in(format!("{owner}.rim_radius"), Group::Rotor, Shown::OnRequest, "radius", node, place);
-            reach = Some(node_of(&value, node));
-            members.push(("rim_radius".into(), value));
-        }
-        self.tensor_members(&owner, place, &axis, &contributions, mass, centre, &mut members);
-        Value::Object(Rc::new(Object {
-            name: owner,
-            what: "a rotor",
-            members,
-            entity: Entity::Rotor(Rotor { contributions, axis, moment, reach }),
-        }))
-    }
-
-    #[allow(clippy::too_many_arguments)]
-    fn tensor_members(
-        &mut self,
-        owner: &SmolStr,
-        place: Place,
-        axis: &Axis,
-        contributions: &[Contribution],
-        mass: NodeId,
-        centre: Vector,
-        members: &mut Vec<(SmolStr, Value)>,
-    ) {
-        // Static unbalance: mass times the distance of its centre from the axis.
-        let offset = self.between(centre, axis.through);
-        let square = self.distance_squared(offset, axis.along);
-        let distance = self.root(square);
-        let stat = self.times(mass, distance);
-        let mut unbalance: Vec<(SmolStr, Value)> = vec![(
-            "static".into(),
-            self.built_in(
-                format!("{owner}.unbalance.static"),
-                Group::Rotor,
-                Shown::OnRequest,
-                "unbalance",
-                stat,
-                place,
-            ),
-        )];
-        let turn = self.turn_x_to(axis.along);
-        let own = |this: &mut Self, v: Vector| -> Vector {
-            std::array::from_fn(|column| {
-                let terms = [
-                    this.times(turn[0][column], v[0]),
-                    this.times(turn[1][column], v[1]),
-                    this.times(turn[2][column], v[2]),
-                ];
-                this.sum(&terms)
-            })
-        };
-        let local = own(self, offset);
-        let angle = self.out.model.graph.add(Op::Atan2(local[2], local[1]));
-        unbalance.push((
-            "static_angle".into(),
-            self.built_in(
-                format!("{owner}.unbalance.static_angle"),
-                Group::Rotor,
-                Shown::OnRequest,
-                "angle",
-                angle,
-                place,
-            ),
-        ));
-        let Some(tensor) = self.central_tensor(contributions, centre) else {
-            members.push(("unbalance".into(), Value::plain(format!("{owner}.unbalance"), "an unbalance", unbalance)));
-            return;
-        };
-        let words = ["xx", "yy", "zz", "xy", "xz", "yz"];
-        let mut named = tensor;
-        let mut tensor_members = Vec::new();
-        for (at, word) in words.into_iter().enumerate() {
-            let value = self.built_in(
-                format!("{owner}.tensor.{word}"),
-                Group::Rotor,
-                Shown::OnRequest,
-                "moment_of_inertia",
-                tensor[at],
-                place,
-            );
-            named[at] = node_of(&value, tensor[at]);
-            tensor_members.push((word.into(), value));
-        }
-        members.push(("tensor".into(), Value::plain(format!("{owner}.tensor"), "a tensor", tensor_members)));
-        let mut products = Vec::new();
-        for (at, word) in words.into_iter().enumerate().skip(3) {
-            let node = self.negate(named[at]);
-            let value = self.built_in(
-                format!("{owner}.product.{word}"),
-                Group::Rotor,
-                Shown::OnRequest,
-                "moment_of_inertia",
-                node,
-                place,
-            );
-            products.push((word.into(), value));
-        }
-        members.push(("product".into(), Value::plain(format!("{owner}.product"), "products of inertia", products)));
-        let id = self.out.model.graph.tensor_of(named);
-        let mut principal = Vec::new();
-        for (rank, word) in ["least", "middle", "greatest"].into_iter().enumerate() {
-            let node = self.out.model.graph.add(Op::PrincipalMoment(id, rank as u8));
-            let name = format!("{owner}.principal.{word}");
-            let value = self.built_in(name, Group::Rotor, Shown::OnRequest, "moment_of_inertia", node, place);
-            principal.push((word.into(), value));
-            let mut axis_members = Vec::new();
-            for (component, letter) in ["x", "y", "z"].into_iter().enumerate() {
-                let node = self.out.model.graph.add(Op::PrincipalAxis(id, rank as u8, component as u8));
-                let ty = pintle_units::Type::number();
-                axis_members.push((letter.into(), Value::Number(Typed { node, ty, place })));
-            }
-            let name = format!("{owner}.principal.{word}_axis");
-            principal.push((format!("{word}_axis").into(), Value::plain(name, "a direction", axis_members)));
-        }
-        members.push(("principal".into(), Value::plain(format!("{owner}.principal"), "principal moments", principal)));
-        // Couple unbalance: the products of inertia that hold the running axis.
-        let columns: [Vector; 3] = std::array::from_fn(|column| [turn[0][column], turn[1][column], turn[2][column]]);
-        let full = [[named[0], named[3], named[4]], [named[3], named[1], named[5]], [named[4], named[5], named[2]]];
-        let along_axis: Vector = full.map(|row| self.dot(row, columns[0]));
-        let (xy, xz) = (self.dot(along_axis, columns[1]), self.dot(along_axis, columns[2]));
-        let (pxy, pxz) = (self.negate(xy), self.negate(xz));
-        let (a, b) = (self.square(pxy), self.square(pxz));
-        let sum = self.plus(a, b);
-        let couple = self.root(sum);
-        let angle = self.out.model.graph.add(Op::Atan2(pxz, pxy));
-        for (word, kind, node) in [("couple", "moment_of_inertia", couple), ("couple_angle", "angle", angle)] {
-            let value =
-                self.built_in(format!("{owner}.unbalance.{word}"), Group::Rotor, Shown::OnRequest, kind, node, place);
-            unbalance.push((word.into(), value));
-        }
-        members.push(("unbalance".into(), Value::plain(format!("{owner}.unbalance"), "an unbalance", unbalance)));
-    }
-
-    fn central_tensor(&mut self, contributions: &[Contribution], centre: Vector) -> Option<Tensor> {
-        let mut tensors = Vec::with_capacity(2 * contributions.len());
-        for part in contributions {
-            tensors.push(part.tensor?);
-            let offset = self.between(part.centre, centre);
-            tensors.push(self.point_tensor(part.mass, offset));
-        }
-        Some(self.tensor_sum(&tensors))
-    }
-
-    fn axial_moment(&mut self, contributions: &[Contribution], axis: &Axis) -> NodeId {
-        let mut terms = Vec::with_capacity(2 * contributions.len());
-        for part in contributions {
-            terms.push(part.axial);
-            let offset = self.between(part.centre, axis.through);
-            let square = self.distance_squared(offset, axis.along);
-            terms.push(self.times(part.mass, square));
-        }
-        self.sum(&terms)
-    }
-
-    /// Moment about any axis; None where a part's cross inertia is not known.
-    pub(super) fn moment_about(&mut self, contributions: &[Contribution], axis: &Axis) -> Option<NodeId> {
-        let mut turned = Vec::with_capacity(contributions.len());
-        for part in contributions {
-            let axial = self.along(&part.tensor?, axis.along);
-            turned.push(Contribution { axial, ..part.clone() });
-        }
-        Some(self.axial_moment(&turned, axis))
+        self.rotor_of(name.text.clone(), place, axis, contributions)
     }
 
     #[allow(clippy::too_many_arguments)]
@@ -591,12 +366,5 @@ impl<'s> Lowerer<'s, '_> {
             _ => None,
         };
         contributions.push(Contribution { mass, centre, tensor, axial, reach });
-    }
-}
-
-fn node_of(value: &Value, otherwise: NodeId) -> NodeId {
-    match value {
-        Value::Number(typed) => typed.node,
-        _ => otherwise,
     }
 }

@@ -2,6 +2,7 @@
 
 use super::bodies::{Body, Properties};
 use super::space::{Arithmetic, Vector};
+use super::templates::{self, Part};
 use super::value::{Typed, Value};
 use super::{Env, Lowerer};
 use crate::codes;
@@ -98,11 +99,19 @@ impl<'s> Lowerer<'s, '_> {
         if !members.iter().any(|field| word(field).as_deref() == Some("volume")) {
             return None;
         }
-        let env = self.shape_members(id, bound, None, Reach::Volume, place)?;
-        match env.local("volume") {
-            Some(Value::Number(typed)) => Some(typed.node),
-            _ => None,
+        let key = templates::key(id, bound, Part::Volume, &self.out.model.graph);
+        if let Some((key, parameters)) = &key
+            && let Some([volume]) = self.replay(key, parameters).as_deref()
+        {
+            return Some(*volume);
         }
+        let before = self.before_reading();
+        let env = self.shape_members(id, bound, None, Reach::Volume, place)?;
+        let Some(Value::Number(typed)) = env.local("volume") else { return None };
+        if let Some((key, parameters)) = key {
+            self.record(key, before, parameters, vec![typed.node]);
+        }
+        Some(typed.node)
     }
 
     pub(super) fn shape_properties(
@@ -116,6 +125,20 @@ impl<'s> Lowerer<'s, '_> {
             Some((_, Value::Number(typed))) => Some(typed.node),
             _ => None,
         })?;
+        let mut key = templates::key(id, bound, Part::Properties, &self.out.model.graph);
+        if let Some((_, parameters)) = &mut key
+            && !parameters.contains(&mass)
+        {
+            parameters.push(mass);
+        }
+        if let Some((key, parameters)) = &key
+            && let Some(results) = self.replay(key, parameters)
+            && let Some((&[x, y, z, axial, yy, zz, xy, xz, yz], reach)) = results.split_first_chunk()
+        {
+            let tensor = Some([axial, yy, zz, xy, xz, yz]);
+            return Some(Properties { mass, centre: [x, y, z], axial, tensor, outer_radius: reach.first().copied() });
+        }
+        let before = self.before_reading();
         let env = self.shape_members(id, bound, Some(mass), Reach::All, body.place)?;
         let number = |env: &Env, name: &str| match env.local(name) {
             Some(Value::Number(typed)) => Some(typed.node),
@@ -159,7 +182,12 @@ impl<'s> Lowerer<'s, '_> {
             Some(node) => Some(node),
             None => self.section_radius(&env),
         };
-        Some(Properties { mass, centre, axial, tensor: Some([axial, y, z, xy, xz, yz]), outer_radius })
+        let tensor = [axial, y, z, xy, xz, yz];
+        if let Some((key, parameters)) = key {
+            let results = centre.into_iter().chain(tensor).chain(outer_radius).collect();
+            self.record(key, before, parameters, results);
+        }
+        Some(Properties { mass, centre, axial, tensor: Some(tensor), outer_radius })
     }
 
     /// The greatest radial coordinate of the section.

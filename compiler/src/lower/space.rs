@@ -22,15 +22,7 @@ pub trait Arithmetic {
 
     /// A plain number.
     fn num(&mut self, value: f64) -> NodeId {
-        // Nearly all are one of these; writing numbers out costs more than all the rest here.
-        const USUAL: [(f64, &str); 6] = [(0.0, "0"), (1.0, "1"), (2.0, "2"), (0.5, "0.5"), (-1.0, "-1"), (4.0, "4")];
-        match USUAL.iter().find(|(usual, _)| usual.to_bits() == value.to_bits()) {
-            Some((_, text)) => self.graph().number(value, text),
-            None => {
-                let text = plain(value);
-                self.graph().number(value, &text)
-            }
-        }
+        self.graph().plain_number(value)
     }
 
     /// The value of a literal node.

@@ -273,8 +273,7 @@ impl<'s> Lowerer<'s, '_> {
         let mut ratio_node = ratio;
         let mut members: Vec<(SmolStr, Value)> = Vec::new();
         if turning {
-            let value =
-                self.built_in(format!("{owner}.speed_ratio"), Group::Train, Shown::OnRequest, "ratio", ratio, place);
+            let value = self.built_in(&[&owner, "speed_ratio"], Group::Train, Shown::OnRequest, "ratio", ratio, place);
             if let Value::Number(typed) = &value {
                 ratio_node = typed.node;
             }
@@ -333,8 +332,7 @@ impl<'s> Lowerer<'s, '_> {
         self.out.requirements.push(Requirement {
             condition,
             sides: None,
-            text: format!("{word} > 0"),
-            owner: "link".into(),
+            words: Some(("link".into(), format!("{word} > 0"))),
             results: Vec::new(),
             subject: fields.owner.clone(),
             place: typed.place,
@@ -445,8 +443,7 @@ impl<'s> Lowerer<'s, '_> {
             self.out.requirements.push(Requirement {
                 condition,
                 sides: None,
-                text: "the ratios round the loop multiply to one".into(),
-                owner: format!("train `{}`", train.name),
+                words: Some((format!("train `{}`", train.name), "the ratios round the loop multiply to one".into())),
                 results: Vec::new(),
                 subject: format!("{}.{}", train.name, link.name).into(),
                 place: link.place,

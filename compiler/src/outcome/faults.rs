@@ -10,21 +10,26 @@ use crate::number::{engineering, shown};
 use crate::results::Side;
 use crate::source::Origin;
 use pintle_graph::{Function, NodeId, Op};
-use pintle_text::Diagnostic;
+use pintle_syntax::ast::ItemKind;
+use pintle_text::{Diagnostic, ItemId};
 
-pub(super) fn requirements(lowered: &Lowered, facts: &NodeFacts, acc: &mut Vec<Diagnostic>) {
+pub(super) fn requirements(sheet: &Sheet, lowered: &Lowered, facts: &NodeFacts, acc: &mut Vec<Diagnostic>) {
     for requirement in &lowered.requirements {
         if !is_broken(lowered, requirement) || facts.open[requirement.condition.index()] {
             continue;
         }
-        let mut text = format!(
-            "`{}` breaks a requirement of its {}: {}",
-            requirement.subject, requirement.owner, requirement.text
-        );
-        if let Some((left, _, right)) = &requirement.sides
-            && let (Some(a), Some(b)) = (lowered.model.value(left.node), lowered.model.value(right.node))
+        let (owner, words) = match &requirement.words {
+            Some((owner, words)) => (owner.clone(), words.clone()),
+            None => {
+                let written = sheet.sources.text(requirement.origin);
+                (owner(sheet, requirement.origin.item), written.split_whitespace().collect::<Vec<_>>().join(" "))
+            }
+        };
+        let mut text = format!("`{}` breaks a requirement of its {owner}: {words}", requirement.subject);
+        if let Some((left, right, ty)) = &requirement.sides
+            && let (Some(a), Some(b)) = (lowered.model.value(*left), lowered.model.value(*right))
         {
-            let unit = pintle_units::display_unit(&left.ty);
+            let unit = pintle_units::display_unit(ty);
             text = format!("{text} ({} against {})", shown(a, &unit), shown(b, &unit));
         }
         let mut diagnostic = Diagnostic::new(codes::REQUIREMENT_BROKEN, requirement.place, text);
@@ -32,6 +37,15 @@ pub(super) fn requirements(lowered: &Lowered, facts: &NodeFacts, acc: &mut Vec<D
             diagnostic = diagnostic.with_label(requirement.origin, "required here");
         }
         acc.push(diagnostic.with_help("correct the size, or choose the shape or formula that is meant"));
+    }
+}
+
+/// A shape or formula, in words.
+fn owner(sheet: &Sheet, item: ItemId) -> String {
+    match sheet.item(item).map(|item| &item.kind) {
+        Some(ItemKind::Shape { name, .. }) => format!("shape `{}`", name.text),
+        Some(ItemKind::Formula { name, .. }) => format!("formula `{}`", name.text),
+        _ => "definition".into(),
     }
 }
 

@@ -31,7 +31,7 @@ pub(super) fn solve(lowered: &mut Lowered, acc: &mut Vec<Diagnostic>) -> Outcome
     let mut values = pintle_graph::evaluate(&model.graph, &inputs);
     let found = pintle_solve::solve(&model.graph, &problem, &structure, &mut inputs, &mut values, &|| false);
     model.values = values;
-    let mut outcomes = Outcomes::new();
+    let mut outcomes = Outcomes::default();
     for (at, (&(input, id), outcome)) in lowered.unknowns.iter().zip(found).enumerate() {
         let quantity = model.quantity(id);
         let place = quantity.place;

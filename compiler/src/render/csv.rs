@@ -18,7 +18,7 @@ pub fn solve(view: &View<'_>) -> String {
                 field(case.case.as_deref().unwrap_or("")),
                 role.into(),
                 field(&it.name),
-                field(&it.kind_words),
+                field(&it.kind_words()),
                 number(si.map(|si| it.unit.from_si(si))),
                 field(&it.unit.text),
                 number(si),

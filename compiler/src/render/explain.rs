@@ -62,7 +62,7 @@ pub fn explain(view: &View<'_>, name: &str, colour: Colour) -> Result<String, Un
 pub fn json(view: &View<'_>, name: &str) -> Result<Value, UnknownName> {
     let writer = Writer { view, base: &view.results.base, model: view.models.first() };
     let (name, tops) = match writer.subject(name)? {
-        Subject::Quantity(quantity) => (quantity.name.clone(), vec![quantity.id]),
+        Subject::Quantity(quantity) => (quantity.name.to_string(), vec![quantity.id]),
         Subject::Ledger(ledger) => (ledger.name.clone(), writer.below_ledger(ledger)),
         Subject::Limit(limit) => (limit.text.clone(), writer.below_limit(limit)),
     };
@@ -72,7 +72,7 @@ pub fn json(view: &View<'_>, name: &str) -> Result<Value, UnknownName> {
 fn unknown(base: &CaseResults, name: &str) -> UnknownName {
     let prefix = format!("{name}.");
     let members: Vec<String> =
-        base.quantities.iter().filter(|it| it.name.starts_with(&prefix)).map(|it| it.name.clone()).collect();
+        base.quantities.iter().filter(|it| it.name.starts_with(&prefix)).map(|it| it.name.to_string()).collect();
     if !members.is_empty() {
         return UnknownName { nearest: members, members: Members::OfTheThing };
     }
@@ -115,10 +115,9 @@ impl<'a> Writer<'a> {
         let si = model.value(it.node);
         Some(QuantityResult {
             id,
-            name: it.name.to_string(),
+            name: it.name.clone(),
             group: it.group,
-            kind: it.ty.kind,
-            kind_words: it.ty.words(),
+            ty: it.ty,
             si,
             unit: it.unit.clone(),
             low: None,
@@ -129,7 +128,7 @@ impl<'a> Writer<'a> {
             shown: it.shown,
             place: it.place,
             line: self.view.sources.location(it.place).line,
-            source: it.source.to_string(),
+            source: it.source.clone(),
         })
     }
 
@@ -190,9 +189,9 @@ impl<'a> Writer<'a> {
     /// Name, value, kind and line.
     fn heading(&self, page: &mut Page, quantity: &QuantityResult) {
         page.heading(&format!("{} = {}", quantity.name, self.value(quantity.id)));
-        let mut about = format!("{}, {}", quantity.kind_words, self.line(quantity));
+        let mut about = format!("{}, {}", quantity.kind_words(), self.line(quantity));
         let input = written(self.model, quantity);
-        let remark = tables::remark(&QuantityResult { source: String::new(), ..quantity.clone() }, &input);
+        let remark = tables::remark(&QuantityResult { source: Default::default(), ..quantity.clone() }, &input);
         if !remark.is_empty() {
             about.push_str(&format!(", {remark}"));
         }
@@ -285,11 +284,11 @@ impl<'a> Writer<'a> {
                     let input = written(self.model, result);
                     let mut source = result.source.clone();
                     if source.is_empty() && chain.leaf(id) == Some(Leaf::Given) {
-                        source = format!("no source, line {}", result.line);
+                        source = format!("no source, line {}", result.line).into();
                     }
                     (tables::value(result, &input), tables::behind(result, &input), source)
                 }
-                None => (self.value(id), String::new(), String::new()),
+                None => (self.value(id), String::new(), Default::default()),
             };
             table.row(vec![self.name(id).into(), value.into(), behind.into(), source.into()]);
         }
@@ -338,7 +337,7 @@ impl<'a> Writer<'a> {
             self.base
                 .limits
                 .iter()
-                .filter(|it| named::in_condition(&it.text).contains(&quantity.name))
+                .filter(|it| named::in_condition(&it.text).iter().any(|name| *name == quantity.name))
                 .map(|it| format!("limit {}", it.text)),
         );
         if uses.is_empty() {

@@ -91,8 +91,8 @@ pub(crate) fn place_in(file: u32, index: u32, start: u32, end: u32) -> Place {
     Place { item: ItemId { file: FileId(file), index }, span: Span::new(start, end) }
 }
 
-pub(crate) fn unit(text: &str) -> Unit {
-    pintle_units::parse(text, &|_| None).unwrap()
+pub(crate) fn unit(text: &str) -> Arc<Unit> {
+    Arc::new(pintle_units::parse(text, &|_| None).unwrap())
 }
 
 struct Maker {
@@ -117,7 +117,8 @@ impl Maker {
         let id = QuantityId(self.model.quantities.len() as u32);
         let node = self.model.graph.add(Op::Quantity(id, of));
         let unit = unit(text);
-        let ty = Type::of_unit(&unit);
+        let mut ty = Type::of_unit(&unit);
+        ty.kind = Some(kind);
         let place = place(item);
         let source = if group == Group::Given {
             ["", "weighing list", "survey of the slipway, rail by rail, with the level of the harbour office"]
@@ -125,7 +126,6 @@ impl Maker {
         } else {
             ""
         };
-        self.model.by_name.insert(name.into(), id);
         self.model.quantities.push(Quantity {
             name: name.into(),
             group,
@@ -141,8 +141,7 @@ impl Maker {
             id,
             name: name.into(),
             group,
-            kind: Some(kind),
-            kind_words: kind.words().into(),
+            ty,
             si: Some(si),
             unit,
             low: None,

@@ -114,7 +114,7 @@ fn head(it: &QuantityResult) -> Map<String, Value> {
     };
     let mut object = Map::new();
     object.insert("name".into(), it.name.as_str().into());
-    object.insert("kind".into(), it.kind_words.as_str().into());
+    object.insert("kind".into(), it.kind_words().as_ref().into());
     object.insert("value".into(), optional(si.map(|si| it.unit.from_si(si))));
     object.insert("unit".into(), it.unit.text.as_str().into());
     object.insert("si".into(), optional(si));

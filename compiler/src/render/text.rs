@@ -190,8 +190,8 @@ mod tests {
         fixture.results.cautions.push("Stored energy remains after the drive is switched off; wait. ".repeat(3));
         for case in std::iter::once(&mut fixture.results.base).chain(&mut fixture.results.cases) {
             for (at, it) in case.quantities.iter_mut().enumerate() {
-                it.name = format!("{}{}", it.name, "_x".repeat(at * 2));
-                it.source = "a source that goes on and on ".repeat(at);
+                it.name = format!("{}{}", it.name, "_x".repeat(at * 2)).into();
+                it.source = "a source that goes on and on ".repeat(at).into();
                 it.si = it.si.map(|si| si * 1.000_123_456);
             }
             for limit in &mut case.limits {

@@ -393,7 +393,7 @@ fn missing_factor(found: &Type, wanted: &Type) -> (String, Option<FixHint>) {
         return missing_angle(found, wanted);
     }
     if found.is_number() {
-        let unit = crate::words::display_unit(wanted).text;
+        let unit = crate::words::display_unit(wanted).text.clone();
         let help =
             format!("write the number with its unit, for example `{unit}`; in a formula a bracket may be missing");
         return (help, Some(FixHint::Append(format!(" * 1 {unit}"))));

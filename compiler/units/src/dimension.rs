@@ -62,7 +62,7 @@ impl Dimension {
     pub const PRESSURE: Dimension = Dimension::of(-1, 1, -2, 0);
 
     /// A mechanical dimension from whole exponents of length, mass, time and angle.
-    pub const fn of(length: i32, mass: i32, time: i32, angle: i32) -> Dimension {
+    pub const fn of(length: i16, mass: i16, time: i16, angle: i16) -> Dimension {
         let zero = Ratio::ZERO;
         Dimension([
             Ratio::whole(length),
@@ -77,11 +77,11 @@ impl Dimension {
     }
 
     /// The same with temperature and current exponents set: for tables of kinds and units.
-    pub const fn and(self, temperature: i32, current: i32) -> Dimension {
+    pub const fn and(self, temperature: i16, current: i16) -> Dimension {
         self.with(3, temperature).with(4, current)
     }
 
-    const fn with(self, slot: usize, exponent: i32) -> Dimension {
+    const fn with(self, slot: usize, exponent: i16) -> Dimension {
         let mut exponents = self.0;
         exponents[slot] = Ratio::whole(exponent);
         Dimension(exponents)

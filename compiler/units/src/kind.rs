@@ -4,8 +4,9 @@
 //! must not mix. The table stands in `kind_table`; which kinds are taken for each other, and what to say then, in
 //! `confusion`. This module must never know values or sheets.
 
+use std::collections::HashMap;
 use std::fmt;
-use std::sync::OnceLock;
+use std::sync::{Arc, OnceLock};
 
 use crate::dimension::Dimension;
 pub use crate::kind_table::Kind;
@@ -61,7 +62,12 @@ pub struct KindDef {
 impl Kind {
     /// The kind of this name or alias.
     pub fn from_name(name: &str) -> Option<Kind> {
-        Kind::all().iter().find(|def| def.name == name || def.aliases.contains(&name)).map(|def| def.kind)
+        static KNOWN: OnceLock<HashMap<&'static str, Kind>> = OnceLock::new();
+        let known = KNOWN.get_or_init(|| {
+            let names = |def: &'static KindDef| std::iter::once(def.name).chain(def.aliases.iter().copied());
+            Kind::all().iter().flat_map(|def| names(def).map(|name| (name, def.kind))).collect()
+        });
+        known.get(name).copied()
     }
 
     /// The names nearest to a misspelt one, best first.
@@ -111,13 +117,13 @@ impl Kind {
     }
 
     /// The unit that it is shown in by default.
-    pub fn display_unit(self) -> Unit {
+    pub fn display_unit(self) -> Arc<Unit> {
         // Every quantity of a sheet asks: each kind's unit text is read once.
-        static READ: OnceLock<Vec<OnceLock<Unit>>> = OnceLock::new();
+        static READ: OnceLock<Vec<OnceLock<Arc<Unit>>>> = OnceLock::new();
         let read = || {
             let mut unit = unit::parse(self.def().unit, &|_| None).unwrap_or_else(|_| Unit::coherent(self.dimension()));
             unit.kind = Some(self);
-            unit
+            Arc::new(unit)
         };
         let slots = READ.get_or_init(|| Kind::all().iter().map(|_| OnceLock::new()).collect());
         slots.get(self as usize).map_or_else(read, |slot| slot.get_or_init(read).clone())

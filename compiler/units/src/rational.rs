@@ -1,7 +1,8 @@
 //! Small exact fractions for the exponents of dimensions.
 //!
 //! Exponents stay exact through roots and powers, so that `sqrt(k/m)` is exactly 1/s.
-//! Every operation is checked: an exponent that leaves the range of `i32` is `None`, never a panic or a wrong number.
+//! Every operation is checked: an exponent beyond 32,767 is `None`, never a panic or a wrong number. Two bytes each
+//! are far more than physics needs and keep types small: every quantity of a sheet carries one.
 //! It must never know what the exponents belong to.
 
 use std::cmp::Ordering;
@@ -10,8 +11,8 @@ use std::fmt;
 /// An exact fraction in lowest terms with a positive denominator.
 #[derive(Copy, Clone, PartialEq, Eq, Hash)]
 pub struct Ratio {
-    num: i32,
-    den: i32,
+    num: i16,
+    den: i16,
 }
 
 impl Ratio {
@@ -23,7 +24,7 @@ impl Ratio {
     pub const HALF: Ratio = Ratio { num: 1, den: 2 };
 
     /// A whole number.
-    pub const fn whole(num: i32) -> Ratio {
+    pub const fn whole(num: i16) -> Ratio {
         Ratio { num, den: 1 }
     }
 
@@ -39,19 +40,19 @@ impl Ratio {
         let shared = gcd(num.unsigned_abs(), den.unsigned_abs());
         let sign = if den < 0 { -1 } else { 1 };
         let shared = i64::try_from(shared).ok()?;
-        let num = i32::try_from(sign * (num / shared)).ok()?;
-        let den = i32::try_from((den / shared).checked_abs()?).ok()?;
+        let num = i16::try_from(sign * (num / shared)).ok()?;
+        let den = i16::try_from((den / shared).checked_abs()?).ok()?;
         Some(Ratio { num, den })
     }
 
     /// The numerator; it carries the sign.
     pub const fn num(self) -> i32 {
-        self.num
+        self.num as i32
     }
 
     /// The denominator, always positive.
     pub const fn den(self) -> i32 {
-        self.den
+        self.den as i32
     }
 
     /// Is it zero?

@@ -258,7 +258,7 @@ impl Type {
             Some((dim, open))
         };
         let Some((dim, open)) = raise() else { return Err(Mismatch::exponent_range()) };
-        let counted = |count: i8| Ratio::whole(i32::from(count)).checked_mul(power).map_or(0, small_ratio);
+        let counted = |count: i8| Ratio::whole(i16::from(count)).checked_mul(power).map_or(0, small_ratio);
         Ok(Type {
             dim,
             angle: self.angle,

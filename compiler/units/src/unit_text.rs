@@ -252,7 +252,7 @@ impl Reader<'_> {
 
     fn caret_power(&mut self) -> Option<Ratio> {
         if self.peek() != Some('(') {
-            return Some(Ratio::whole(self.integer()?));
+            return Ratio::new(self.integer()?, 1);
         }
         self.bump();
         let num = self.integer()?;
@@ -292,7 +292,7 @@ impl Reader<'_> {
             value = value.checked_mul(10)?.checked_add(digit)?;
             digits += 1;
         }
-        (digits > 0).then_some(Ratio::whole(if negative { -value } else { value }))
+        if digits > 0 { Ratio::new(if negative { -value } else { value }, 1) } else { None }
     }
 
     /// `a * b^power`.

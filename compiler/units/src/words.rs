@@ -2,6 +2,8 @@
 //!
 //! It must never judge; `unify` does.
 
+use std::sync::Arc;
+
 use crate::dimension::Dimension;
 use crate::kind::Kind;
 use crate::rational::Ratio;
@@ -113,7 +115,7 @@ const USUAL: &[(Dimension, &str)] = &[
 ];
 
 /// The unit that a value of this type is best shown in: that of its kind, or the coherent SI unit.
-pub fn display_unit(ty: &Type) -> Unit {
+pub fn display_unit(ty: &Type) -> Arc<Unit> {
     if let Some(kind) = ty.kind {
         return kind.display_unit();
     }
@@ -136,5 +138,5 @@ pub fn display_unit(ty: &Type) -> Unit {
     } else {
         bare.si_symbol()
     };
-    unit::parse(&text, &|_| None).unwrap_or_else(|_| Unit::coherent(bare))
+    Arc::new(unit::parse(&text, &|_| None).unwrap_or_else(|_| Unit::coherent(bare)))
 }

@@ -39,14 +39,14 @@ impl Writer<'_> {
         let Some(it) = result else { return json!({"name": self.name(id)}) };
         let optional = |value: Option<f64>| value.map_or(Value::Null, number::json);
         json!({
-            "name": it.name,
-            "kind": it.kind_words,
+            "name": it.name.as_str(),
+            "kind": it.kind_words(),
             "value": optional(it.si.map(|si| it.unit.from_si(si))),
             "unit": it.unit.text.as_str(),
             "si": optional(it.si),
             "status": it.status.word(),
             "line": it.line,
-            "source": it.source,
+            "source": it.source.as_str(),
             "formula": symbols,
             "numbers": numbers,
         })

@@ -217,7 +217,7 @@ pub(crate) fn remark(it: &QuantityResult, input: &Written) -> String {
         parts.push(format!("u {}", number::engineering(it.unit.difference_from_si(std))));
     }
     if !it.source.is_empty() {
-        parts.push(it.source.clone());
+        parts.push(it.source.to_string());
     }
     parts.join("; ")
 }

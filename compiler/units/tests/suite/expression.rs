@@ -104,7 +104,7 @@ impl<'a> Reader<'a> {
         }
         let digits = self.take(|c| c.is_ascii_digit());
         self.rest = self.rest.trim_start();
-        let power: i32 = digits.parse().map_err(|_| Trouble::Text(format!("`{digits}` is no power")))?;
+        let power: i16 = digits.parse().map_err(|_| Trouble::Text(format!("`{digits}` is no power")))?;
         Ok(base.pow(Ratio::whole(power))?)
     }
 

@@ -56,7 +56,7 @@ fn any_force_times_length() -> impl Strategy<Value = Type> {
         Kind::Lead,
     ];
     let whole = prop_oneof![Just(Kind::Torque), Just(Kind::Energy), Just(Kind::Work)].prop_map(Type::of_kind);
-    let part = (0..lengths.len(), 0_u32..3, -1_i32..=1).prop_filter_map("a product", move |(at, id, turns)| {
+    let part = (0..lengths.len(), 0_u32..3, -1_i16..=1).prop_filter_map("a product", move |(at, id, turns)| {
         let length = Type::of_kind(lengths[at]).with_source(id);
         let angle = Type::of_kind(Kind::Angle).pow(Ratio::whole(turns)).ok()?;
         Type::of_kind(Kind::Force).mul(&length).ok()?.mul(&angle).ok()
