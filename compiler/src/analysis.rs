@@ -195,6 +195,10 @@ impl Snapshot {
             None => markdown.push_str(&format!(": {}", quantity.status.word())),
         }
         markdown.push_str(&format!("\n\n{}, {}", quantity.kind_words(), quantity.status.word()));
+        if let Some((role, place)) = model.roles.get(&quantity.id) {
+            let line = compilation.sources.location(*place).line;
+            markdown.push_str(&format!(", used as a {} (line {line})", role.words()));
+        }
         let node = model.quantity(quantity.id).node;
         let formula = formula(&model.graph, node).text(&|id| model.quantity(id).name.to_string(), &|input| {
             model.inputs.get(input as usize).map_or(String::new(), |input| input.text.to_string())

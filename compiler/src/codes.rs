@@ -32,6 +32,7 @@ codes! {
     NOT_A_NUMBER_FOR_CERTAIN = Error "count-not-known", "a count depends on an unknown or is not a whole number";
     SUSPECT_FACTOR = Warning "suspect-factor", "a factor of 2 or 2*pi is probably wrong";
     OPEN_KIND = Hint "open-kind", "a value could be two kinds of quantity";
+    LENGTH_ROLE = Hint "length-role", "a length serves as a lever arm in one line and as a path in another";
     MISSING_FIELD = Error "missing-field", "something that must be stated is not";
     UNKNOWN_FIELD = Error "unknown-field", "a field that means nothing here";
     CONFLICTING_FIELDS = Error "conflicting-fields", "two fields say different things about one quantity";

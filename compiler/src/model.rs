@@ -4,8 +4,9 @@ use crate::QuickMap;
 use crate::results::{Group, Shown};
 use pintle_graph::{Graph, InputId, NodeId, QuantityId};
 use pintle_text::Place;
-use pintle_units::{Type, Unit};
+use pintle_units::{LengthRole, Type, Unit};
 use smol_str::SmolStr;
+use std::collections::BTreeMap;
 use std::sync::{Arc, OnceLock};
 
 /// A named quantity.
@@ -88,6 +89,8 @@ pub struct Model {
     pub inputs: Vec<Input>,
     /// Value of every node, once solved.
     pub values: Vec<f64>,
+    /// What a length of which nothing says what it does was first used as, and where.
+    pub roles: BTreeMap<QuantityId, (LengthRole, Place)>,
     /// Quantities by name, once somebody asks.
     by_name: OnceLock<QuickMap<SmolStr, QuantityId>>,
 }

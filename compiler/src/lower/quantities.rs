@@ -132,11 +132,12 @@ impl<'s> Lowerer<'s, '_> {
             self.hint_open_kind(&typed, name, place);
         }
         let unit = self.checked_display(env, &item.clauses, &typed).or(unit);
+        let ty = self.named_type(typed.ty);
         Value::Number(self.quantity(
             name.text.clone(),
             Group::Given,
             Shown::Always,
-            typed.ty,
+            ty,
             typed.node,
             unit,
             place,
@@ -227,11 +228,12 @@ impl<'s> Lowerer<'s, '_> {
             None => None,
         };
         let unit = self.checked_display(env, &item.clauses, &typed).or(written);
+        let ty = self.named_type(typed.ty);
         Value::Number(self.quantity(
             name.text.clone(),
             Group::Derived,
             Shown::Always,
-            typed.ty,
+            ty,
             typed.node,
             unit,
             place,
@@ -331,6 +333,7 @@ impl<'s> Lowerer<'s, '_> {
                 .with_help("declare one: `within LOW .. HIGH`"),
             );
         }
+        let ty = self.named_type(ty);
         let typed = self.quantity(full.into(), group, Shown::Always, ty, node, unit, place, SmolStr::default());
         if let Some(id) = self.out.model.inputs.last().and_then(|input| input.quantity) {
             self.out.unknowns.push((input, id));

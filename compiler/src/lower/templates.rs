@@ -56,7 +56,12 @@ pub(super) fn key(
     for (_, value) in bound {
         let Value::Number(typed) = value else { return None };
         let own = matches!(graph.op(typed.node), Op::Quantity(..)) && !nodes.contains(&typed.node);
-        parameters.push((typed.ty, (!own).then_some(typed.node)));
+        // Which length it is that nothing says the use of makes no difference.
+        let mut ty = typed.ty;
+        if let Some((length, _)) = &mut ty.open {
+            *length = pintle_units::ANONYMOUS;
+        }
+        parameters.push((ty, (!own).then_some(typed.node)));
         if own {
             nodes.push(typed.node);
         }

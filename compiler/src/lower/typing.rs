@@ -4,9 +4,12 @@
 use super::value::Typed;
 use super::{Env, Lowerer};
 use crate::codes;
+use pintle_graph::QuantityId;
 use pintle_syntax::ast::{BinaryOp, Name, UnitText};
 use pintle_text::{Diagnostic, Place};
-use pintle_units::{FixHint, Kind, Mismatch, MismatchCode, Ratio, Type, TypeWarning, Unit, UnitError, UnitErrorCode};
+use pintle_units::{
+    FixHint, Kind, LengthRole, Mismatch, MismatchCode, Ratio, Type, TypeWarning, Unit, UnitError, UnitErrorCode,
+};
 use smol_str::SmolStr;
 
 /// The type of `pi`.
@@ -64,6 +67,7 @@ impl<'s> Lowerer<'s, '_> {
         match typed.ty.fit(kind) {
             Ok(fit) => {
                 self.warn(&fit.warnings, typed.place);
+                self.settle(fit.resolved, typed.place);
                 Some(Typed { ty: fit.ty, ..typed.clone() })
             }
             Err(mismatch) => {
@@ -109,6 +113,7 @@ impl<'s> Lowerer<'s, '_> {
         match joined {
             Ok(joined) => {
                 self.warn(&joined.warnings, at);
+                self.settle(joined.resolved, at);
                 Some(joined.ty)
             }
             Err(mismatch) => {
@@ -172,6 +177,50 @@ impl<'s> Lowerer<'s, '_> {
             if !self.out.diagnostics.contains(&diagnostic) {
                 self.report(diagnostic);
             }
+        }
+    }
+
+    /// The type of a named quantity: a length of which nothing says what it does is remembered by name.
+    pub(super) fn named_type(&self, ty: Type) -> Type {
+        match ty.open {
+            Some((pintle_units::ANONYMOUS, power)) if power == Ratio::ONE => {
+                ty.with_source(self.out.model.quantities.len() as u32)
+            }
+            _ => ty,
+        }
+    }
+
+    /// Remembers what a length turned out to be at its first use, and points at a use of the other sort.
+    fn settle(&mut self, resolved: Option<(u32, LengthRole)>, place: Place) {
+        let Some((id, role)) = resolved else { return };
+        let id = QuantityId(id);
+        let Some(&(first, first_place)) = self.out.model.roles.get(&id) else {
+            self.out.model.roles.insert(id, (role, place));
+            return;
+        };
+        if first == role {
+            return;
+        }
+        let quantity = self.out.model.quantity(id);
+        let (name, defined) = (quantity.name.clone(), quantity.place);
+        let diagnostic = Diagnostic::new(
+            codes::LENGTH_ROLE,
+            place,
+            format!("`{name}` is used as a {} here, but as a {} before", role.words(), first.words()),
+        )
+        .with_label(first_place, format!("as a {} here", first.words()))
+        .with_help(format!(
+            "if both are meant, leave it so; else say what it is where it is defined, such as `{name} : {}`",
+            if first == LengthRole::Path { "travel" } else { "radius" }
+        ));
+        let known = self
+            .out
+            .diagnostics
+            .iter()
+            .any(|it| it.code == codes::LENGTH_ROLE && it.labels.first() == diagnostic.labels.first());
+        let own = |place: Place| self.sheet.origin(place.item) != crate::source::Origin::Standard;
+        if !known && own(place) && own(first_place) && own(defined) {
+            self.report(diagnostic);
         }
     }
 
