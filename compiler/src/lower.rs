@@ -17,6 +17,7 @@ mod limits;
 mod literals;
 mod loads;
 mod materials;
+mod placements;
 mod quantities;
 mod reflected;
 mod rotor_members;

@@ -1,12 +1,14 @@
 //! What came out: the one value that the command line, the reports, JSON and
 //! the language server read. Plain data; no stage is called from here.
 
+use crate::QuickMap;
 use pintle_graph::QuantityId;
 use pintle_text::Place;
 use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
 use std::borrow::Cow;
 use std::sync::Arc;
+use std::sync::OnceLock;
 
 /// The title block.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -56,12 +58,21 @@ pub struct CaseResults {
     pub limits: Vec<LimitResult>,
     /// Every `confirm`.
     pub confirms: Vec<ConfirmResult>,
+    /// Places of the quantities by name, once somebody asks.
+    pub(crate) by_name: OnceLock<QuickMap<SmolStr, usize>>,
 }
 
 impl CaseResults {
-    /// The quantity of that full dotted name.
+    /// The quantity of that full dotted name. To be asked only when all are in.
     pub fn quantity(&self, name: &str) -> Option<&QuantityResult> {
-        self.quantities.iter().find(|it| it.name == name)
+        let by_name = self.by_name.get_or_init(|| {
+            let mut by_name = QuickMap::default();
+            for (at, quantity) in self.quantities.iter().enumerate() {
+                by_name.entry(quantity.name.clone()).or_insert(at);
+            }
+            by_name
+        });
+        self.quantities.get(*by_name.get(name)?)
     }
 }
 

@@ -69,6 +69,18 @@ pub struct Properties {
     pub outer_radius: Option<NodeId>,
 }
 
+impl Properties {
+    /// Puts a named node in the place of the axial moment.
+    pub(super) fn name_axial(&mut self, named: NodeId) {
+        if let Some(tensor) = &mut self.tensor {
+            for member in tensor.iter_mut().take(2).filter(|member| **member == self.axial) {
+                *member = named;
+            }
+        }
+        self.axial = named;
+    }
+}
+
 impl<'s> Lowerer<'s, '_> {
     pub(super) fn body(
         &mut self,
@@ -153,13 +165,25 @@ impl<'s> Lowerer<'s, '_> {
             return Value::Failed;
         }
         let volume = self.form_volume(&form, place);
+        // Named before they are used, so that what follows reads `drum.mass`, not all that a mass is made of.
+        let volume = volume.map(|volume| {
+            let (value, node) = self.named_member(&name.text, "volume", "volume", volume, Group::Body, place);
+            members.push(("volume".into(), value));
+            node
+        });
+        let mut mass_value = None;
         let mass = match (&stated_mass, &density, volume) {
             (Some(mass), Some(density), Some(volume)) => {
                 self.agreeing_mass(mass, density, volume, &name.text, place);
                 Some(mass.node)
             }
             (Some(mass), _, _) => Some(mass.node),
-            (None, Some(density), Some(volume)) => Some(self.times(density.node, volume)),
+            (None, Some(density), Some(volume)) => {
+                let mass = self.times(density.node, volume);
+                let (value, node) = self.named_member(&name.text, "mass", "mass", mass, Group::Body, place);
+                mass_value = Some(value);
+                Some(node)
+            }
             (None, Some(density), None) => {
                 self.report(
                     Diagnostic::new(
@@ -187,40 +211,24 @@ impl<'s> Lowerer<'s, '_> {
             _ => None,
         };
         let mut body = Body { name: name.text.clone(), place, form, properties: None, volume, density: density_node };
-        if let Some(volume) = volume {
-            members.push(("volume".into(), self.body_member(&body, "volume", "volume", volume)));
-        }
         if measured || owns_mass || mass.is_some() {
             let source = self.source(&item.clauses).unwrap_or_default();
-            let Some(properties) = self.properties(&body, mass) else { return Value::Failed };
-            // A measured mass is already in the table under this name.
-            let mass_value = match (&stated_mass, measured) {
-                (Some(typed), _) => Value::Number(typed.clone()),
-                (None, true) => Value::Number(Typed { node: properties.mass, ty: self.kind_type("mass"), place }),
-                (None, false) => self.body_member(&body, "mass", "mass", properties.mass),
-            };
-            members.push(("mass".into(), mass_value.clone()));
+            let Some(mut properties) = self.properties(&body, mass) else { return Value::Failed };
+            let mass_value = mass_value.unwrap_or_else(|| {
+                // A mass that is stated, measured or a parameter is in the table already.
+                Value::Number(Typed { node: properties.mass, ty: self.kind_type("mass"), place })
+            });
+            members.push(("mass".into(), mass_value));
             if let (Some(density), true) = (density_node, density.is_none()) {
                 members.push(("density".into(), self.body_member(&body, "density", "density", density)));
             } else if let Some(density) = &density {
                 members.push(("density".into(), Value::Number(density.clone())));
             }
-            let mut properties = properties;
-            if let (Value::Number(typed), None) = (&mass_value, &stated_mass) {
-                properties.mass = typed.node;
-            }
-            let moment = self.body_member(&body, "J", "moment_of_inertia", properties.axial);
-            if let Value::Number(typed) = &moment {
-                properties.axial = typed.node;
-                if let Some(tensor) = &mut properties.tensor {
-                    if tensor[1] == tensor[0] {
-                        tensor[1] = typed.node;
-                    }
-                    tensor[0] = typed.node;
-                }
-            }
-            if let (Value::Number(typed), false) = (&moment, source.is_empty())
-                && let Op::Quantity(id, _) = self.out.model.graph.op(typed.node)
+            let (moment, node) =
+                self.named_member(&body.name, "J", "moment_of_inertia", properties.axial, Group::Body, place);
+            properties.name_axial(node);
+            if !source.is_empty()
+                && let Op::Quantity(id, _) = self.out.model.graph.op(node)
                 && let Some(quantity) = self.out.model.quantities.get_mut(id.0 as usize)
             {
                 quantity.source = source;
@@ -251,6 +259,24 @@ impl<'s> Lowerer<'s, '_> {
 
     fn has_override(&self, fields: &Fields<'_>, name: &str) -> bool {
         self.overrides.fields.contains_key(format!("{}.{name}", fields.owner).as_str())
+    }
+
+    /// A property under its own name, and the node that carries the name.
+    pub(super) fn named_member(
+        &mut self,
+        owner: &str,
+        word: &str,
+        kind: &str,
+        node: NodeId,
+        group: Group,
+        place: Place,
+    ) -> (Value, NodeId) {
+        let value = self.built_in(&[owner, word], group, Shown::OnRequest, kind, node, place);
+        let named = match &value {
+            Value::Number(typed) => typed.node,
+            _ => node,
+        };
+        (value, named)
     }
 
     fn body_member(&mut self, body: &Body, word: &str, kind: &str, node: NodeId) -> Value {

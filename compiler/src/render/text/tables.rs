@@ -110,9 +110,12 @@ fn searched(model: Option<&Model>, it: &QuantityResult) -> bool {
 /// One row a body or rotor: mass, moment of inertia, centre of mass.
 fn compact(page: &mut Page, case: &CaseResults, group: Group, heading: &str) {
     let mut owners: Vec<&str> = Vec::new();
+    // Removed material has a mass but no centre of its own: it is part of its rotor's row.
+    let whole = |owner: &&str| case.quantity(&format!("{owner}.centre.x")).is_some();
     for it in case.quantities.iter().filter(|it| it.group == group) {
         let owner = COMPACT.iter().find_map(|member| it.name.strip_suffix(member));
-        if let Some(owner) = owner.filter(|owner| !owners.contains(owner)) {
+        // Members of one thing stand together.
+        if let Some(owner) = owner.filter(|owner| owners.last() != Some(owner)).filter(whole) {
             owners.push(owner);
         }
     }
