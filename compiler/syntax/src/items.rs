@@ -12,7 +12,7 @@ use pintle_text::{Diagnostic, Span};
 use crate::ast::{Clauses, Item, ItemKind, SourceFile};
 use crate::codes;
 use crate::grammar::{Grammar, Marks, Parses, run};
-use crate::layout::{Statement, holds_items, is_component_line, lay_out, rebase};
+use crate::layout::{Layout, Statement, holds_items, is_component_line, lay_out, rebase};
 
 /// Errors of one file that are kept.
 const MAX_ERRORS: usize = 200;
@@ -33,8 +33,39 @@ pub(crate) fn read_all(text: &str) -> SourceFile {
     }
     let mut layout = lay_out(text, &lex(text));
     rebase(&mut layout);
-    let reader = Reader { text, marks: &layout.marks, grammar: Grammar::new() };
-    SourceFile { items: reader.items(&layout.statements) }
+    // A parser cannot be shared between threads, so each makes its own.
+    let read = |statements| Reader { text, marks: &layout.marks, grammar: Grammar::new() }.items(statements);
+    let (first, rest) = layout.statements.split_at(half(&layout));
+    if rest.is_empty() {
+        return SourceFile { items: read(first) };
+    }
+    std::thread::scope(|scope| {
+        let behind = std::thread::Builder::new().spawn_scoped(scope, || read(rest));
+        let mut items = read(first);
+        items.extend(match behind {
+            Ok(thread) => thread.join().unwrap_or_else(|panic| std::panic::resume_unwind(panic)),
+            // No thread to be had.
+            Err(_) => read(rest),
+        });
+        SourceFile { items }
+    })
+}
+
+/// Statements from which a second thread is worth its start.
+const MANY: usize = 500;
+
+/// Where a long text is cut for two threads: at half of its marks, never between lines of prose, which are one item.
+fn half(layout: &Layout) -> usize {
+    let all = layout.statements.len();
+    if all < MANY {
+        return all;
+    }
+    let middle = layout.marks.len() / 2;
+    let from = layout.statements.partition_point(|statement| statement.head.start < middle);
+    let is_prose =
+        |statement: &Statement| layout.marks.get(statement.head.start).is_some_and(|mark| mark.token == Token::Prose);
+    let rest = layout.statements.get(from..).unwrap_or(&[]);
+    rest.iter().position(|statement| !is_prose(statement)).map_or(all, |skipped| from + skipped)
 }
 
 fn broken(offset: u32, len: u32, errors: Vec<Diagnostic<Span>>) -> Item {

@@ -179,3 +179,30 @@ fn wanted_and_vary_may_hold_commas() {
         |kind| matches!(kind, ItemKind::Later(later) if later.lines.len() == 2 && later.lines[1].expressions.len() == 2),
     );
 }
+
+/// A long text is read by two threads: wherever it is cut, the items are those of its lines read one by one.
+#[test]
+fn a_long_text_has_the_items_of_its_lines() {
+    for prose_every in [2, 3, 7, 1000] {
+        for shift in 0..4 {
+            let block = |at: usize| match (at + shift) % prose_every {
+                0 => format!("| prose {at}\n| goes on\n| and ends\n"),
+                1 => format!("body b{at} = disc {{\n  diameter = {at} mm\n}}\n"),
+                _ => format!("given x{at} = {at} mm cite \"list {at}\"\n"),
+            };
+            let blocks: Vec<String> = (1..=700).map(block).collect();
+            let whole = parse(&blocks.concat());
+            let mut offset = 0;
+            let mut items = whole.items.iter();
+            for block in &blocks {
+                let alone = parse(block);
+                let [own] = alone.items.as_slice() else { panic!("{block}") };
+                let item = items.next().unwrap_or_else(|| panic!("no item for {block}"));
+                assert_eq!(item.offset, offset, "{block}");
+                assert!(Item { offset: 0, ..item.clone() } == *own, "{block}: {item:?}");
+                offset += block.len() as u32;
+            }
+            assert!(items.next().is_none());
+        }
+    }
+}
