@@ -296,7 +296,7 @@ pub struct Clauses {
     /// `as kN`: the display unit.
     pub display: Option<UnitText>,
     /// `for k from 5 to 12`.
-    pub repeat: Option<Repeat>,
+    pub repeat: Option<Box<Repeat>>,
 }
 
 /// Where a value comes from.

@@ -91,7 +91,7 @@ pub(super) fn clauses<'s>(repeat: Parses<'s, Repeat>) -> Parses<'s, Clauses> {
                     Clause::Cite(cite) => clauses.cite.replace(cite).is_some(),
                     Clause::Because(text) => clauses.because.replace(text).is_some(),
                     Clause::Display(unit) => clauses.display.replace(unit).is_some(),
-                    Clause::Repeat(repeat) => clauses.repeat.replace(repeat).is_some(),
+                    Clause::Repeat(repeat) => clauses.repeat.replace(Box::new(repeat)).is_some(),
                 };
                 if repeated {
                     let fault =
