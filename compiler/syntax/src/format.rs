@@ -2,16 +2,18 @@
 //!
 //! Line breaks stay where the author put them, one blank line at most between
 //! two lines; blocks are indented by two, blanks between marks follow fixed
-//! rules. Items with faults are left byte for byte. Where braces do not match,
+//! rules, and neighbouring lines of one sort stand in columns. Items with faults are left byte for byte. Where braces do not match,
 //! indentation stays too, since it is all that tells what was meant.
 //!
 //! `a=3 kg*m^2*( b+c )` → `a = 3 kg*m^2 * (b + c)`
 
+mod columns;
 mod plan;
 mod spacing;
 
 use pintle_lexer::Token;
 
+use columns::{Line, Sort};
 use plan::{Piece, Plan};
 
 /// The text in canonical layout. The same tokens and comments, in the same
@@ -19,104 +21,122 @@ use plan::{Piece, Plan};
 pub fn format(text: &str) -> String {
     let plan = Plan::new(text);
     let newline = if plan.crlf { "\r\n" } else { "\n" };
-    let mut printer =
-        Printer { plan: &plan, text, newline, out: String::with_capacity(text.len() + 64), n_newlines: 2 };
+    let mut printer = Printer { plan: &plan, text, lines: Vec::new(), n_newlines: 2 };
     printer.print();
-    printer.out
+    columns::align(&mut printer.lines);
+    let mut out = String::with_capacity(text.len() + text.len() / 4 + 64);
+    if text.starts_with('\u{FEFF}') {
+        out.push('\u{FEFF}');
+    }
+    for line in &printer.lines {
+        if line.blank_before {
+            out.push_str(newline);
+        }
+        out.push_str(&line.text);
+        out.push_str(newline);
+    }
+    out
 }
 
 /// What is open around the token being printed.
 #[derive(Clone, Copy, PartialEq, Eq)]
 enum Opened {
-    Block,
+    /// Braces of a statement that begins with this word.
+    Block(Sort),
     Bracket,
 }
 
 struct Printer<'a> {
     plan: &'a Plan,
     text: &'a str,
-    newline: &'static str,
-    out: String,
+    lines: Vec<Line>,
     /// Line ends since the last token; two at the start, so that no blank line comes first.
     n_newlines: usize,
 }
 
 impl Printer<'_> {
     fn print(&mut self) {
-        if self.text.starts_with('\u{FEFF}') {
-            self.out.push('\u{FEFF}');
-        }
         let mut opened: Vec<Opened> = Vec::new();
         let mut before: Option<&Piece> = None;
         let mut at = 0;
-        let mut first = true;
+        // The sort of the statement being printed.
+        let mut sort = Sort::Other;
         while let Some(piece) = self.plan.pieces.get(at) {
             at += 1;
             if piece.token == Token::Newline {
                 self.n_newlines += 1;
                 continue;
             }
-            if self.n_newlines > 0 {
-                if !first {
-                    self.out.push_str(self.newline);
-                    if self.n_newlines > 1 {
-                        self.out.push_str(self.newline);
-                    }
-                }
-                self.indent(piece, &opened);
-            } else if let Some(before) = before {
-                self.out.push_str(spacing::between(before, piece));
+            if piece.starts {
+                sort = self.plan.sort(self.text, at - 1, opened.last());
             }
-            first = false;
+            let fresh = self.n_newlines > 0;
+            if fresh {
+                if let Some(line) = self.lines.last_mut() {
+                    line.whole &= opened.len() == line.depth;
+                }
+                let blank_before = self.n_newlines > 1 && !self.lines.is_empty();
+                let text = self.indent(piece, &opened);
+                let sort = if piece.starts && piece.verbatim.is_none() { sort } else { Sort::Other };
+                let is_remark = piece.token == Token::Comment;
+                let depth = opened.len();
+                self.lines.push(Line { text, blank_before, sort, depth, is_remark, whole: true, stops: Vec::new() });
+            } else if let (Some(before), Some(line)) = (before, self.lines.last_mut()) {
+                line.text.push_str(spacing::between(before, piece));
+            }
+            let second = before.is_some_and(|before| before.starts);
+            let Some(line) = self.lines.last_mut() else { break };
+            // Only the statement that begins the line has columns, not those in its braces.
+            if !fresh
+                && opened.len() == line.depth
+                && let Some(column) = self.plan.column(self.text, at - 1, line.sort, second)
+                && line.stops.iter().all(|(known, _)| *known < column)
+            {
+                line.stops.push((column, line.text.len()));
+            }
             self.n_newlines = 0;
             let end = match piece.verbatim {
                 // An item with faults: its bytes as they are.
                 Some(end) => {
-                    self.out.push_str(self.text.get(piece.span.start as usize..end as usize).unwrap_or(""));
+                    line.text.push_str(self.text.get(piece.span.start as usize..end as usize).unwrap_or(""));
                     end
                 }
                 None => {
                     let text = self.text.get(piece.span.range()).unwrap_or("");
                     let trimmed = matches!(piece.token, Token::Comment | Token::Prose);
-                    self.out.push_str(if trimmed { text.trim_end() } else { text });
+                    line.text.push_str(if trimmed { text.trim_end() } else { text });
                     piece.span.end
                 }
             };
-            note(&mut opened, piece.token, piece.verbatim.is_none());
+            note(&mut opened, piece.token, sort, piece.verbatim.is_none());
             before = Some(piece);
             while let Some(inside) = self.plan.pieces.get(at).filter(|inside| inside.span.start < end) {
                 before = Some(inside);
                 at += 1;
             }
         }
-        if !first {
-            self.out.push_str(self.newline);
-        }
     }
 
     /// The blanks before the first token of a line.
-    fn indent(&mut self, piece: &Piece, opened: &[Opened]) {
+    fn indent(&self, piece: &Piece, opened: &[Opened]) -> String {
         if let Some(kept) = piece.indent.filter(|_| self.plan.keeps_indent) {
-            self.out.push_str(self.text.get(kept.range()).unwrap_or(""));
-            return;
+            return self.text.get(kept.range()).unwrap_or("").to_string();
         }
         let closes = matches!(piece.token, Token::CloseBrace | Token::CloseParen | Token::CloseBracket);
         let levels = opened.len().saturating_sub(usize::from(closes));
         let in_bracket = opened.last() == Some(&Opened::Bracket);
         let goes_on = !piece.starts && !closes && !in_bracket && piece.token != Token::Comment;
-        for _ in 0..levels + usize::from(goes_on) {
-            self.out.push_str("  ");
-        }
+        "  ".repeat(levels + usize::from(goes_on))
     }
 }
 
 /// Keeps account of what is open. A verbatim item opens and closes its own.
-fn note(opened: &mut Vec<Opened>, token: Token, printed: bool) {
+fn note(opened: &mut Vec<Opened>, token: Token, sort: Sort, printed: bool) {
     if !printed {
         return;
     }
     match token {
-        Token::OpenBrace => opened.push(Opened::Block),
+        Token::OpenBrace => opened.push(Opened::Block(sort)),
         Token::OpenParen | Token::OpenBracket => opened.push(Opened::Bracket),
         Token::CloseBrace | Token::CloseParen | Token::CloseBracket => {
             opened.pop();
@@ -179,6 +199,33 @@ mod tests {
         check_format("body a = b {}", "body a = b {}\n");
         check_format("body a = b { }  cite \"c\"", "body a = b {} cite \"c\"\n");
         check_format("body a = b { c = 1 , }", "body a = b { c = 1, }\n");
+    }
+
+    #[test]
+    fn neighbouring_lines_stand_in_columns() {
+        check_format(
+            "given mass=3 t cite \"a\"\ngiven v : speed=2 m/s    cite \"b\" # c\ngiven way = 1 m # d",
+            "given mass      = 3 t   cite \"a\"\n\
+             given v : speed = 2 m/s cite \"b\"  # c\n\
+             given way       = 1 m             # d\n",
+        );
+        check_format("a = 1 m\n\nlonger = 2 m", "a = 1 m\n\nlonger = 2 m\n");
+        check_format("a = 1 m\ngiven longer = 2 m", "a = 1 m\ngiven longer = 2 m\n");
+        check_format("ω_größte = 1\na = 2\n# c\nb = 3", "ω_größte = 1\na        = 2\n# c\nb        = 3\n");
+        check_format(
+            "ledger a of b {\nstart at rest\ntravel c 2 m\nlose heat = q\n}",
+            "ledger a of b {\n  start  at rest\n  travel c 2 m\n  lose   heat = q\n}\n",
+        );
+        check_format(
+            "train t {\ngear g=a->b{ratio=2}\nrope line=b->load{falls=1}\n}",
+            "train t {\n  gear g    = a -> b    { ratio = 2 }\n  rope line = b -> load { falls = 1 }\n}\n",
+        );
+    }
+
+    #[test]
+    fn a_line_far_too_long_leaves_the_columns() {
+        let long = "a_name_that_is_far_longer_than_all_others_here";
+        check_format(&format!("a = 1\nbc = 2\n{long} = 3\nd=4"), &format!("a  = 1\nbc = 2\n{long} = 3\nd = 4\n"));
     }
 
     #[test]
