@@ -4,24 +4,43 @@
 //! that other threads can work on. Nothing here knows a protocol.
 
 use crate::source::{Disk, Files};
-use crate::{Compilation, Options, compile_text};
+use crate::{Compilation, Options, compile_unless};
 use pintle_graph::formula;
-use pintle_text::Severity;
+use pintle_syntax::ast::SourceFile;
+use pintle_text::{Diagnostic, FileId, ItemId, Severity};
 use std::collections::BTreeMap;
-use std::sync::Arc;
+use std::sync::{Arc, OnceLock};
+
+/// The text of an open file; whoever first needs its syntax parses it, once.
+#[derive(Debug)]
+struct Text {
+    text: Arc<str>,
+    syntax: OnceLock<Arc<SourceFile>>,
+}
+
+impl Text {
+    fn syntax(&self) -> &Arc<SourceFile> {
+        self.syntax.get_or_init(|| Arc::new(pintle_syntax::parse(&self.text)))
+    }
+}
 
 /// Texts of open files; the disk for all others.
 #[derive(Clone, Debug, Default)]
 struct Texts {
-    open: Arc<BTreeMap<String, Arc<str>>>,
+    open: Arc<BTreeMap<String, Arc<Text>>>,
 }
 
 impl Files for Texts {
     fn read(&self, path: &str) -> Result<Vec<u8>, String> {
         match self.open.get(path) {
-            Some(text) => Ok(text.as_bytes().to_vec()),
+            Some(open) => Ok(open.text.as_bytes().to_vec()),
             None => Disk.read(path),
         }
+    }
+
+    fn parsed(&self, path: &str) -> Option<(Arc<str>, Arc<SourceFile>)> {
+        let open = self.open.get(path)?;
+        Some((open.text.clone(), open.syntax().clone()))
     }
 }
 
@@ -39,7 +58,11 @@ impl Host {
 
     /// Opens a file or replaces its text.
     pub fn set_text(&mut self, path: &str, text: &str) {
-        Arc::make_mut(&mut self.texts.open).insert(path.into(), text.into());
+        // The same text again keeps its syntax.
+        if self.texts.open.get(path).is_none_or(|open| *open.text != *text) {
+            let text = Text { text: text.into(), syntax: OnceLock::new() };
+            Arc::make_mut(&mut self.texts.open).insert(path.into(), Arc::new(text));
+        }
     }
 
     /// Closes a file; the disk holds its text from now on.
@@ -90,45 +113,43 @@ pub struct Hover {
 impl Snapshot {
     /// The text of an open file.
     pub fn text(&self, path: &str) -> Option<&str> {
-        self.texts.open.get(path).map(|text| &**text)
+        self.texts.open.get(path).map(|open| &*open.text)
     }
 
     /// Faults of the text alone, at once.
     pub fn syntax_diagnostics(&self, path: &str) -> Vec<FileDiagnostic> {
-        let Some(text) = self.text(path) else { return Vec::new() };
-        let file = pintle_syntax::parse(text);
+        let Some(open) = self.texts.open.get(path) else { return Vec::new() };
         let mut result = Vec::new();
-        for item in &file.items {
-            for error in &item.errors {
-                result.push(FileDiagnostic {
-                    code: error.code.name,
-                    severity: error.severity(),
-                    message: error.message.clone(),
-                    start: error.place.start + item.offset,
-                    end: error.place.end + item.offset,
-                    related: error
-                        .labels
-                        .iter()
-                        .map(|it| {
-                            (
-                                path.to_string(),
-                                it.place.start + item.offset,
-                                it.place.end + item.offset,
-                                it.message.clone(),
-                            )
-                        })
-                        .collect(),
-                    help: error.help.clone(),
+        for (index, item) in open.syntax().items.iter().enumerate() {
+            let mut found = Vec::new();
+            crate::syntax_errors(ItemId { file: FileId(0), index: index as u32 }, item, 0, &mut found);
+            // Places count from the item's start.
+            result.extend(found.into_iter().map(|diagnostic| {
+                let place = |place: pintle_text::Place| (place.span.start + item.offset, place.span.end + item.offset);
+                let (start, end) = place(diagnostic.place);
+                let related = diagnostic.labels.iter().map(|label| {
+                    let (start, end) = place(label.place);
+                    (path.to_string(), start, end, label.message.clone())
                 });
-            }
+                FileDiagnostic {
+                    code: diagnostic.code.name,
+                    severity: diagnostic.severity(),
+                    message: message(&diagnostic),
+                    start,
+                    end,
+                    related: related.collect(),
+                    help: diagnostic.help.clone(),
+                }
+            }));
         }
+        result.sort_by_key(|it| it.start);
         result
     }
 
-    /// The sheet at `path` through all stages.
-    pub fn compile(&self, path: &str) -> Option<Compilation> {
-        let text = self.text(path)?;
-        Some(compile_text(path, text, &self.texts, &Options::default()))
+    /// The sheet at `path` through all stages; nothing where it is not open, or
+    /// where `cancel` said so on the way.
+    pub fn compile(&self, path: &str, cancel: &(dyn Fn() -> bool + Sync)) -> Option<Compilation> {
+        compile_unless(path, self.text(path)?, &self.texts, &Options::default(), cancel)
     }
 
     /// All diagnostics of the file itself.
@@ -148,15 +169,10 @@ impl Snapshot {
                     (sources.location(label.place).source.to_string(), span.start, span.end, label.message.clone())
                 })
                 .collect();
-            let message = if diagnostic.note.is_empty() {
-                diagnostic.message.clone()
-            } else {
-                format!("{} ({})", diagnostic.message, diagnostic.note)
-            };
             result.push(FileDiagnostic {
                 code: diagnostic.code.name,
                 severity: diagnostic.severity(),
-                message,
+                message: message(diagnostic),
                 start: span.start,
                 end: span.end,
                 related,
@@ -211,6 +227,14 @@ impl Snapshot {
     }
 }
 
+/// The headline, with its note.
+fn message(diagnostic: &Diagnostic) -> String {
+    match diagnostic.note.as_str() {
+        "" => diagnostic.message.clone(),
+        note => format!("{} ({note})", diagnostic.message),
+    }
+}
+
 /// The dotted path that holds `offset`, up to the word under it.
 fn path_at(text: &str, offset: usize) -> Option<(usize, usize)> {
     let mut offset = offset.min(text.len());
@@ -239,7 +263,7 @@ mod tests {
         let text = marked.replace("<|>", "");
         let mut host = Host::new();
         host.set_text("t.pintle", &text);
-        let compilation = host.snapshot().compile("t.pintle").expect("an open file");
+        let compilation = host.snapshot().compile("t.pintle", &|| false).expect("an open file");
         let hover = Snapshot::hover(&text, &compilation, offset as u32).expect("a hover");
         for part in expected {
             assert!(hover.markdown.contains(part), "{part:?} is not in {:?}", hover.markdown);

@@ -96,12 +96,30 @@ pub fn compile(path: &str, files: &(dyn Files + Sync), options: &Options) -> Res
 
 /// Compiles a sheet's text; `path` names it and is where files beside it are looked for.
 pub fn compile_text(path: &str, text: &str, files: &(dyn Files + Sync), options: &Options) -> Compilation {
-    // Nesting is bounded, but callers' threads may have small stacks. A stack, not a thread: a thread would get a
-    // heap of its own, whose pages come and go with it.
-    stacker::grow(STACK, || compile_here(path, text, files, options))
+    compile_unless(path, text, files, options, &|| false).unwrap_or_default()
 }
 
-fn compile_here(path: &str, text: &str, files: &dyn Files, options: &Options) -> Compilation {
+/// As [`compile_text`], but gives up soon after `cancel` has begun to say so,
+/// in the middle of a search too; then there is nothing.
+pub fn compile_unless(
+    path: &str,
+    text: &str,
+    files: &(dyn Files + Sync),
+    options: &Options,
+    cancel: &(dyn Fn() -> bool + Sync),
+) -> Option<Compilation> {
+    // Nesting is bounded, but callers' threads may have small stacks. A stack, not a thread: a thread would get a
+    // heap of its own, whose pages come and go with it.
+    stacker::grow(STACK, || compile_here(path, text, files, options, cancel))
+}
+
+fn compile_here(
+    path: &str,
+    text: &str,
+    files: &dyn Files,
+    options: &Options,
+    cancel: &dyn Fn() -> bool,
+) -> Option<Compilation> {
     let (sheet, mut diagnostics) = names::resolve(path, text.into(), files);
     for (id, item) in sheet.own_items() {
         syntax_errors(id, item, 0, &mut diagnostics);
@@ -113,10 +131,13 @@ fn compile_here(path: &str, text: &str, files: &dyn Files, options: &Options) ->
     let mut models = Vec::new();
     let mut hazards = lower::Hazards::default();
     for (at, case) in cases.iter().enumerate() {
+        if cancel() {
+            return None;
+        }
         let lowered = lower::lower(&sheet, &case.overrides, &case.names, files);
         hazards = lowered.hazards;
         let name = (at > 0).then(|| case.label());
-        let (found, model, mut reported) = outcome::outcome(&sheet, lowered, name.clone());
+        let (found, model, mut reported) = outcome::outcome(&sheet, lowered, name.clone(), cancel);
         if let Some(name) = name {
             // What the base says too is said once.
             reported.retain(|it| !diagnostics.contains(it));
@@ -130,6 +151,10 @@ fn compile_here(path: &str, text: &str, files: &dyn Files, options: &Options) ->
         diagnostics.extend(reported);
         models.push(model);
     }
+    // What a stopped search left behind is no outcome.
+    if cancel() {
+        return None;
+    }
     results.cautions = outcome::cautions(hazards);
     if options.strict == Strictness::Strict {
         uncited(&results, &mut diagnostics);
@@ -137,7 +162,7 @@ fn compile_here(path: &str, text: &str, files: &dyn Files, options: &Options) ->
     let key = |it: &Diagnostic| (it.place.item.file, sheet.sources.span(it.place).start);
     diagnostics.sort_by_key(key);
     diagnostics.dedup();
-    Compilation { sources: sheet.sources, diagnostics, results, models }
+    Some(Compilation { sources: sheet.sources, diagnostics, results, models })
 }
 
 /// Syntax errors of an item and of the items inside it.

@@ -87,12 +87,28 @@ impl Sheet {
 pub fn resolve(path: &str, text: Arc<str>, files: &dyn Files) -> (Sheet, Vec<Diagnostic>) {
     let mut sheet = Sheet::default();
     let mut acc = Vec::new();
-    let syntax = Arc::new(pintle_syntax::parse(&text));
+    let (text, syntax) = match files.parsed(path).filter(|(known, _)| *known == text) {
+        Some(parsed) => parsed,
+        None => {
+            let syntax = Arc::new(pintle_syntax::parse(&text));
+            (text, syntax)
+        }
+    };
     sheet.sources.add(new_source(path.to_string(), Origin::Sheet, text, syntax));
     let imports = load(&mut sheet, files, &mut acc);
     declare(&mut sheet, &imports, &mut acc);
     order(&mut sheet, &mut acc);
     (sheet, acc)
+}
+
+/// Text and syntax of a file that a sheet uses, or why it cannot be read.
+fn parsed(path: &str, files: &dyn Files) -> Result<(Arc<str>, Arc<pintle_syntax::ast::SourceFile>), String> {
+    if let Some(parsed) = files.parsed(path) {
+        return Ok(parsed);
+    }
+    let text: Arc<str> = String::from_utf8_lossy(&files.read(path)?).into();
+    let syntax = Arc::new(pintle_syntax::parse(&text));
+    Ok((text, syntax))
 }
 
 fn new_source(path: String, origin: Origin, text: Arc<str>, syntax: Arc<pintle_syntax::ast::SourceFile>) -> Source {
@@ -132,10 +148,8 @@ fn load(sheet: &mut Sheet, files: &dyn Files, acc: &mut Vec<Diagnostic>) -> Vec<
                 if sheet.sources.files().iter().any(|it| it.path == path) {
                     continue;
                 }
-                match files.read(&path) {
-                    Ok(bytes) => {
-                        let text: Arc<str> = String::from_utf8_lossy(&bytes).into();
-                        let syntax = Arc::new(pintle_syntax::parse(&text));
+                match parsed(&path, files) {
+                    Ok((text, syntax)) => {
                         sheet.sources.add(new_source(path, Origin::Used, text, syntax));
                     }
                     Err(why) => acc.push(

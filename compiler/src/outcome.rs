@@ -23,9 +23,14 @@ use pintle_text::{Diagnostic, Place};
 const EQUAL: f64 = 1e-12;
 
 /// Solves a lowered sheet and judges it.
-pub fn outcome(sheet: &Sheet, mut lowered: Lowered, case: Option<String>) -> (CaseResults, Model, Vec<Diagnostic>) {
+pub fn outcome(
+    sheet: &Sheet,
+    mut lowered: Lowered,
+    case: Option<String>,
+    cancel: &dyn Fn() -> bool,
+) -> (CaseResults, Model, Vec<Diagnostic>) {
     let mut acc = std::mem::take(&mut lowered.diagnostics);
-    let outcomes = solving::solve(&mut lowered, &mut acc);
+    let outcomes = solving::solve(&mut lowered, &mut acc, cancel);
     let facts = NodeFacts::new(&lowered, &outcomes);
     faults::requirements(sheet, &lowered, &facts, &mut acc);
     faults::lost_values(sheet, &lowered, &facts, &mut acc);

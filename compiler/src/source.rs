@@ -8,6 +8,11 @@ use std::sync::Arc;
 pub trait Files {
     /// The bytes of the file at `path`, or why they cannot be read.
     fn read(&self, path: &str) -> Result<Vec<u8>, String>;
+
+    /// Text and syntax of the file at `path`, where they are known already.
+    fn parsed(&self, _path: &str) -> Option<(Arc<str>, Arc<SourceFile>)> {
+        None
+    }
 }
 
 /// Files of the disk.

@@ -43,7 +43,12 @@ fn main() -> ExitCode {
         }
     }
     log.line(format_args!("pintle-server {}", env!("CARGO_PKG_VERSION")));
-    match pintle_server::serve(std::io::stdin(), std::io::stdout(), Snapshot::compile, log) {
+    match pintle_server::serve(
+        std::io::stdin(),
+        std::io::stdout(),
+        |snapshot, path, cancel| snapshot.compile(path, cancel),
+        log,
+    ) {
         Ok(end) => ExitCode::from(end.code()),
         Err(error) => complain(FAULT, &format!("cannot start: {error}")),
     }

@@ -220,7 +220,8 @@ impl State {
             open.results = Some((generation, compilation.clone()));
         }
         // Overtaken: good enough for a hover, not for a list that stands until the next one.
-        if open.wanted != generation {
+        // An edit taken since has changed the text already, though not yet what is wanted.
+        if open.wanted != generation || self.touched.contains(&uri) {
             return;
         }
         let Some(open) = self.open.get(&uri) else { return };
@@ -281,9 +282,13 @@ impl State {
     }
 
     /// Other open documents whose last outcome used the file, or missed one.
+    /// While an outcome is still awaited, nobody knows what it will have used.
     fn users_of(&self, path: &str) -> Vec<Url> {
         let uses = |open: &Open| {
-            open.results.as_ref().is_some_and(|(_, compilation)| {
+            open.results.as_ref().is_none_or(|(generation, compilation)| {
+                if *generation != open.wanted {
+                    return true;
+                }
                 let files = compilation.sources.files();
                 files.iter().any(|file| file.origin == Origin::Used && file.path == path)
                     || compilation.diagnostics.iter().any(|it| it.code == pintle::codes::UNREADABLE_FILE)
@@ -320,7 +325,8 @@ impl State {
         }
         let hover = self.open.get(&uri).and_then(|open| {
             let (generation, compilation) = open.results.as_ref()?;
-            let age = if *generation == open.wanted { Age::Current } else { Age::Earlier };
+            let current = *generation == open.wanted && !self.touched.contains(&uri);
+            let age = if current { Age::Current } else { Age::Earlier };
             let positions = Positions::new(&text, self.encoding);
             let found = Snapshot::hover(&text, compilation, positions.offset(position) as u32)?;
             Some(convert::hover(found, &positions, age))

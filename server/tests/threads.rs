@@ -9,14 +9,21 @@ use pintle::analysis::Snapshot;
 use serde_json::{Value, json};
 use std::time::{Duration, Instant};
 
-/// Panics at a text that holds `boom`, and takes a while where it holds `slow`.
-fn faulty(snapshot: &Snapshot, path: &str) -> Option<Compilation> {
+/// Panics at a text that holds `boom`, takes a while where it holds `slow`, and
+/// does not end before it is cancelled where it holds `endless`.
+fn faulty(snapshot: &Snapshot, path: &str, cancel: &(dyn Fn() -> bool + Sync)) -> Option<Compilation> {
     let text = snapshot.text(path)?;
     assert!(!text.contains("boom"), "as the text says");
     if text.contains("slow") {
         std::thread::sleep(Duration::from_secs(3));
     }
-    snapshot.compile(path)
+    while text.contains("endless") {
+        std::thread::sleep(Duration::from_millis(5));
+        if cancel() {
+            return None;
+        }
+    }
+    snapshot.compile(path, &|| false)
 }
 
 #[test]
@@ -99,4 +106,60 @@ fn closing_during_the_analysis_leaves_no_diagnostics_behind() {
     let message = client.next().expect("an answer");
     assert_eq!(message["id"], json!(id), "{message}");
     assert_eq!(client.exit(), 0);
+}
+
+#[test]
+fn an_edit_stops_the_analysis_under_way() {
+    let mut client = Client::in_process(faulty);
+    client.open("a = 3 kg + 2 m # endless\n");
+    std::thread::sleep(Duration::from_millis(300));
+    client.change(2, json!([edit(0, 17, 24, "")]));
+    assert_eq!(client.published(2, |_| true), ["unit-mismatch"]);
+    assert_eq!(client.leave(), 0);
+}
+
+#[test]
+fn an_edit_of_another_sheet_is_not_held_up_and_the_first_comes_after_it() {
+    const OTHER: &str = "file:///nowhere/other.pintle";
+    let mut client = Client::in_process(faulty);
+    client.open("a = 3 kg + 2 m # slow\n");
+    std::thread::sleep(Duration::from_millis(300));
+    client.open_at(OTHER, "b = 3 kg + 2 s # endless\n");
+    std::thread::sleep(Duration::from_millis(300));
+    // The endless one is stopped for this and waits again; closed, it is forgotten.
+    client.change(2, json!([edit(0, 4, 5, "4")]));
+    assert_eq!(client.published(2, |_| true), ["unit-mismatch"]);
+    client.notify("textDocument/didClose", json!({"textDocument": {"uri": OTHER}}));
+    client.change(3, json!([edit(0, 0, 21, "a = 4 kg")]));
+    assert!(client.published(3, |_| true).is_empty());
+    assert_eq!(client.leave(), 0);
+}
+
+#[test]
+fn closing_stops_the_analysis_under_way() {
+    let mut client = Client::in_process(faulty);
+    client.open("a = 3 kg # endless\n");
+    std::thread::sleep(Duration::from_millis(300));
+    client.notify("textDocument/didClose", json!({"textDocument": {"uri": SHEET}}));
+    client.open("a = 3 kg + 2 m\n");
+    assert_eq!(client.published(1, |codes| !codes.is_empty()), ["unit-mismatch"]);
+    assert_eq!(client.leave(), 0);
+}
+
+#[test]
+fn a_file_edited_during_the_first_analysis_of_its_user_is_seen() {
+    let mut client = Client::in_process(faulty);
+    let part = "file:///nowhere/part.pintle";
+    client.open_at(part, "drum_mass = 5 kg\n");
+    assert!(client.published_at(part, Some(1), |_| true).is_empty());
+    client.open("use ./part\nx = drum_mass + 2 m # slow\n");
+    std::thread::sleep(Duration::from_millis(500));
+    let document = json!({"uri": part, "version": 2});
+    client.notify(
+        "textDocument/didChange",
+        json!({"textDocument": document, "contentChanges": [{"text": "drum_mass = 5 m\n"}]}),
+    );
+    assert!(client.published_at(part, Some(2), |_| true).is_empty());
+    assert!(client.published(1, |_| true).is_empty(), "the text it used was replaced in the meantime");
+    assert_eq!(client.leave(), 0);
 }

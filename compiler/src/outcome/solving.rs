@@ -8,7 +8,7 @@ use crate::number::{engineering, shown};
 use pintle_solve::{Equation, NotFound, Outcome, Problem, Unknown};
 use pintle_text::Diagnostic;
 
-pub(super) fn solve(lowered: &mut Lowered, acc: &mut Vec<Diagnostic>) -> Outcomes {
+pub(super) fn solve(lowered: &mut Lowered, acc: &mut Vec<Diagnostic>, cancel: &dyn Fn() -> bool) -> Outcomes {
     let model = &mut lowered.model;
     let mut inputs: Vec<f64> = Vec::with_capacity(model.inputs.len());
     for input in &model.inputs {
@@ -29,7 +29,7 @@ pub(super) fn solve(lowered: &mut Lowered, acc: &mut Vec<Diagnostic>) -> Outcome
     let problem = Problem { unknowns, equations };
     let structure = pintle_solve::structure(&model.graph, &problem);
     let mut values = pintle_graph::evaluate(&model.graph, &inputs);
-    let found = pintle_solve::solve(&model.graph, &problem, &structure, &mut inputs, &mut values, &|| false);
+    let found = pintle_solve::solve(&model.graph, &problem, &structure, &mut inputs, &mut values, cancel);
     model.values = values;
     let mut outcomes = Outcomes::default();
     for (at, (&(input, id), outcome)) in lowered.unknowns.iter().zip(found).enumerate() {
