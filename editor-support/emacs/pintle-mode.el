@@ -64,14 +64,19 @@
       (let (found)
         (while (and (not found) (re-search-forward pattern limit t))
           (setq found (and (not (save-match-data (looking-at pintle--no-name-behind)))
-                           (not (eq (char-before (match-beginning 1)) ?.)))))
+                           ;; Behind a dot it is a member, behind a colon a kind.
+                           (not (save-excursion
+                                  (goto-char (match-beginning 1))
+                                  (skip-chars-backward " \t")
+                                  (or (eq (char-before) ?:)
+                                      (eq (char-before (match-beginning 1)) ?.)))))))
         found))))
 
 (defconst pintle-font-lock-keywords
   `((,(pintle--keyword-matcher pintle-item-keywords "^[ \t]*") (1 font-lock-keyword-face))
     (,(pintle--keyword-matcher pintle-line-keywords "\\_<") (1 font-lock-builtin-face))
     (":[ \t]*\\([[:alpha:]_][[:alnum:]_]*\\)" (1 font-lock-type-face))
-    ("\\_<\\([[:alpha:]_][[:alnum:]_]*\\)[ \t]*=\\(?:[^=]\\|$\\)" (1 font-lock-variable-name-face))
+    ("\\_<\\([[:alpha:]_][[:alnum:]_]*\\)[ \t]*\\(?::\\|=\\(?:[^=]\\|$\\)\\)" (1 font-lock-variable-name-face))
     ("\\_<\\([[:alpha:]_][[:alnum:]_]*\\)(" (1 font-lock-function-name-face))
     ;; A unit follows its number after one blank and holds none itself.
     (,(concat "\\_<[0-9][0-9_]*\\(?:\\.[0-9][0-9_]*\\)?\\(?:[eE][-+]?[0-9]+\\)? "

@@ -2,7 +2,6 @@
 
 #![deny(clippy::print_stdout, clippy::print_stderr)]
 
-use pintle::analysis::Snapshot;
 use pintle_server::Log;
 use std::io::Write;
 use std::process::ExitCode;
