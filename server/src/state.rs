@@ -353,3 +353,71 @@ impl State {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// A state without threads behind it; what it publishes comes out of the pipe.
+    fn state() -> (State, std::io::PipeReader) {
+        let (reader, writer) = std::io::pipe().expect("a pipe");
+        let outbox = Outbox::start(writer, Log::nowhere()).expect("a thread");
+        let state = State {
+            host: Host::new(),
+            open: BTreeMap::new(),
+            touched: BTreeSet::new(),
+            encoding: Encoding::Utf16,
+            generation: 0,
+            waiting: Vec::new(),
+            mailbox: Arc::default(),
+            outbox,
+            log: Log::nowhere(),
+        };
+        (state, reader)
+    }
+
+    fn outcome(state: &State, uri: &Url) -> Message {
+        let open = &state.open[uri];
+        let compilation = state.host.snapshot().compile(&open.path, &|| false).expect("an open file");
+        Message::Analysed(Analysed {
+            uri: uri.clone(),
+            generation: open.wanted,
+            compilation: Some(Arc::new(compilation)),
+        })
+    }
+
+    /// All that was written until the state was dropped.
+    fn written((state, mut reader): (State, std::io::PipeReader)) -> String {
+        drop(state);
+        let mut words = String::new();
+        std::io::Read::read_to_string(&mut reader, &mut words).expect("text");
+        words
+    }
+
+    fn change(uri: &Url, text: &str) -> Message {
+        let change = TextDocumentContentChangeEvent { range: None, range_length: None, text: text.into() };
+        Message::Change { uri: uri.clone(), version: 2, changes: vec![change] }
+    }
+
+    /// The outcome of the first text arrives before or behind an edit that nobody has looked at yet.
+    #[track_caller]
+    fn check_outcome_and_edit(edit_first: bool, published: usize) {
+        let uri = Url::parse("file:///nowhere/sheet.pintle").expect("an address");
+        let (mut state, reader) = state();
+        state.take(Message::Open { uri: uri.clone(), version: 1, text: "a = 3 kg + 2 m\n".into() });
+        state.look_at_touched();
+        let (outcome, edit) = (outcome(&state, &uri), change(&uri, "\n\na = 3 kg\n"));
+        for message in if edit_first { [edit, outcome] } else { [outcome, edit] } {
+            state.take(message);
+        }
+        let words = written((state, reader));
+        assert_eq!(words.matches("unit-mismatch").count(), published, "{words}");
+        assert!(!words.contains("\"version\":2"), "{words}");
+    }
+
+    #[test]
+    fn an_outcome_behind_an_edit_in_one_batch_is_not_published_for_the_newer_text() {
+        check_outcome_and_edit(false, 1);
+        check_outcome_and_edit(true, 0);
+    }
+}
