@@ -131,10 +131,11 @@ fn compile_here(
     let mut models = Vec::new();
     let mut hazards = lower::Hazards::default();
     for (at, case) in cases.iter().enumerate() {
+        let lowered = lower::lower_unless(&sheet, &case.overrides, &case.names, files, cancel);
+        // What broke off is no outcome, and nothing is to be said of it.
         if cancel() {
             return None;
         }
-        let lowered = lower::lower(&sheet, &case.overrides, &case.names, files);
         hazards = lowered.hazards;
         let name = (at > 0).then(|| case.label());
         let (found, model, mut reported) = outcome::outcome(&sheet, lowered, name.clone(), cancel);

@@ -133,6 +133,17 @@ pub struct Hazards {
 /// Turns a sheet into equations under `overrides`; `case` names the case for
 /// ledgers restricted by `under`.
 pub fn lower<'s>(sheet: &'s Sheet, overrides: &Overrides<'s>, case: &[SmolStr], files: &dyn Files) -> Lowered {
+    lower_unless(sheet, overrides, case, files, &|| false)
+}
+
+/// As [`lower`], but breaks off once `cancel` says so: what there is then is of no use.
+pub(crate) fn lower_unless<'s>(
+    sheet: &'s Sheet,
+    overrides: &Overrides<'s>,
+    case: &[SmolStr],
+    files: &dyn Files,
+    cancel: &dyn Fn() -> bool,
+) -> Lowered {
     let mut lowerer = Lowerer {
         sheet,
         overrides,
@@ -152,7 +163,7 @@ pub fn lower<'s>(sheet: &'s Sheet, overrides: &Overrides<'s>, case: &[SmolStr], 
     // Growing large tables costs more than a little room: a body has about twenty nodes, six of them named.
     lowerer.out.model.graph.reserve(16 * sheet.order.len());
     lowerer.out.model.quantities.reserve(5 * sheet.order.len());
-    lowerer.run();
+    lowerer.run(cancel);
     lowerer.out
 }
 
@@ -208,7 +219,7 @@ impl Env {
 }
 
 impl<'s> Lowerer<'s, '_> {
-    fn run(&mut self) {
+    fn run(&mut self, cancel: &dyn Fn() -> bool) {
         let sheet = self.sheet;
         for &id in &sheet.order {
             if sheet.circular.contains(&id) {
@@ -216,6 +227,9 @@ impl<'s> Lowerer<'s, '_> {
             }
         }
         for &id in &sheet.order {
+            if cancel() {
+                return;
+            }
             self.entity(id);
         }
         // Statements that name things but that nothing can name.

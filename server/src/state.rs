@@ -216,8 +216,10 @@ impl State {
     fn analysed(&mut self, analysed: Analysed) {
         let Analysed { uri, generation, compilation } = analysed;
         let Some(open) = self.open.get_mut(&uri).filter(|open| !open.document.lost) else { return };
+        // To be dropped when all is said: a large outcome takes a while to take apart.
+        let mut _displaced = None;
         if let Some(compilation) = &compilation {
-            open.results = Some((generation, compilation.clone()));
+            _displaced = open.results.replace((generation, compilation.clone()));
         }
         // Overtaken: good enough for a hover, not for a list that stands until the next one.
         // An edit taken since has changed the text already, though not yet what is wanted.
