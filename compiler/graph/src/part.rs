@@ -26,6 +26,8 @@ pub struct Part {
     pub graph: Graph,
     /// The nodes asked for, in it.
     pub outputs: Vec<NodeId>,
+    /// For each of its nodes the one of the whole graph that it stands for.
+    pub origins: Vec<NodeId>,
 }
 
 impl<'g> Parts<'g> {
@@ -91,6 +93,7 @@ impl<'g> Parts<'g> {
         self.round += 1;
         let (graph, round) = (self.graph, self.round);
         let mut part = Graph::new();
+        let mut origins = Vec::with_capacity(2 * nodes.len());
         part.set_inputs(inputs.len() as u32);
         for &node in nodes {
             let op = graph.op(node);
@@ -99,6 +102,7 @@ impl<'g> Parts<'g> {
                 if let Some(place) = inputs.iter().position(|&own| own == input) {
                     self.moved[node.index()] = round;
                     self.local[node.index()] = part.push(Op::Input(InputId(place as u32)));
+                    origins.push(node);
                     self.seen[node.index()] = round;
                     continue;
                 }
@@ -111,7 +115,7 @@ impl<'g> Parts<'g> {
             }
             // Operands first, so that a number stands before the node that reads it.
             graph.operands(node, |operand| {
-                self.local_number(operand, round, values, &mut part);
+                self.local_number(operand, round, values, &mut part, &mut origins);
             });
             let local = |node: NodeId| self.local[node.index()];
             let op = match op {
@@ -126,22 +130,24 @@ impl<'g> Parts<'g> {
             self.moved[node.index()] = round;
             self.seen[node.index()] = round;
             self.local[node.index()] = part.push(op);
+            origins.push(node);
         }
         let outputs = outputs
             .iter()
             .map(|&output| {
-                self.local_number(output, round, values, &mut part);
+                self.local_number(output, round, values, &mut part, &mut origins);
                 self.local[output.index()]
             })
             .collect();
-        Part { graph: part, outputs }
+        Part { graph: part, outputs, origins }
     }
 
     /// Gives `node` a place in the part if it has none yet: then it stands still and is a number there.
-    fn local_number(&mut self, node: NodeId, round: u32, values: &[f64], part: &mut Graph) {
+    fn local_number(&mut self, node: NodeId, round: u32, values: &[f64], part: &mut Graph, origins: &mut Vec<NodeId>) {
         if self.seen[node.index()] != round {
             self.seen[node.index()] = round;
             self.local[node.index()] = part.push_number(values[node.index()]);
+            origins.push(node);
         }
     }
 
