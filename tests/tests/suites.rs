@@ -145,6 +145,11 @@ fn ledger_features() {
 }
 
 #[test]
+fn limits_of_size() {
+    check("15_limits_of_size.md");
+}
+
+#[test]
 fn every_suite_is_run() {
     let run = include_str!("suites.rs");
     for path in common::files(&common::folder().join("suites"), "md") {
@@ -161,6 +166,9 @@ fn wrong_expectations_are_faults() {
     assert_eq!(suite("a = 2 kg", "a = 2 kg").len(), 0);
     assert_eq!(suite("a = 2 kg", "a = 2.0001 kg").len(), 1);
     assert_eq!(suite("a = 2 kg", "b = 2 kg").len(), 1);
+    assert_eq!(suite("given a = 2 kg ± 1 kg", "low a = 1 kg\nhigh a = 3 kg").len(), 0);
+    assert_eq!(suite("given a = 2 kg ± 1 kg", "low a = 1.1 kg\nhigh a = 2.9 kg").len(), 2);
+    assert_eq!(suite("given a = 2 kg", "low a = 2 kg").len(), 1);
     assert_eq!(suite("a = 2 kg\nlimit a <= 1 kg", "limit \"a <= 1 kg\" met").len(), 1);
     assert_eq!(suite("a = 2 kg + 1 m\nb = 1", "b = 1 1").len(), 1);
     assert_eq!(suite("a = 2 kg", "a = 2 kg\nerror unit-mismatch at line 1").len(), 1);

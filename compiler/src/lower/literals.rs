@@ -8,7 +8,7 @@ use crate::source::Origin;
 use pintle_graph::InputId;
 use pintle_syntax::ast::{Definition, Expr, ExprKind, ItemKind, Literal, Tolerance, UnaryOp, UnitText};
 use pintle_text::{Diagnostic, Place};
-use pintle_units::{Type, Unit};
+use pintle_units::{Type, Unit, limits_of_size, nearest_classes};
 use smol_str::SmolStr;
 use std::sync::Arc;
 
@@ -21,6 +21,15 @@ pub(super) struct Read {
     pub tolerance: Option<InputTolerance>,
     /// Number and unit, for formulas.
     pub text: SmolStr,
+}
+
+/// A number as written and read, as far as a tolerance class needs it.
+#[derive(Clone, Copy)]
+pub(super) struct SizeRead<'l> {
+    pub si: f64,
+    pub unit: Option<&'l Unit>,
+    pub literal: &'l Literal,
+    pub place: Place,
 }
 
 /// A definition that is nothing but a number, with its sign.
@@ -171,17 +180,53 @@ impl<'s> Lowerer<'s, '_> {
                 Some(Some(InputTolerance::Standard(u.abs())))
             }
             Tolerance::Class(name) => {
+                let (low, high) = self.class_limits(
+                    env.place(name.span),
+                    &name.text,
+                    &SizeRead { si, unit, literal, place: env.place(literal.number_span) },
+                )?;
+                limits(low, high)
+            }
+        }
+    }
+
+    /// Lower and upper limit of a size with an ISO 286 class, in SI; None after a report.
+    pub(super) fn class_limits(&mut self, class_place: Place, class: &str, sized: &SizeRead<'_>) -> Option<(f64, f64)> {
+        let SizeRead { si, unit, literal, place } = *sized;
+        let minus = if si < 0.0 { "-" } else { "" };
+        let size = match &literal.unit {
+            Some(unit) => format!("{minus}{} {}", literal.number, unit.text),
+            None => format!("{minus}{}", literal.number),
+        };
+        let refuse = |message: String| {
+            Diagnostic::new(codes::TOLERANCE_REFUSED, class_place, message)
+                .with_label(place, format!("the size, {size}"))
+        };
+        let Some(unit) = unit.filter(|unit| unit.dim == pintle_units::Dimension::LENGTH) else {
+            let what = match unit {
+                Some(unit) => format!("a number in {}", unit.text),
+                None => "a number without a unit".into(),
+            };
+            self.report(
+                refuse(format!("the ISO 286 class {class} on {what}: classes are for lengths"))
+                    .with_help("give the limits instead: `± (UPPER, LOWER)` behind the number"),
+            );
+            return None;
+        };
+        // The steps of the standard are in mm; by the unit's own ratio 50 mm is 50, without the rounding of 0.05 m.
+        let mm = si / unit.factor * (unit.factor / 1e-3);
+        match limits_of_size(mm, class) {
+            Ok(found) => Some((si + found.lower * 1e-6, si + found.upper * 1e-6)),
+            Err(why) => {
+                let near: Vec<String> = nearest_classes(mm, class).iter().map(|near| format!("`{near}`")).collect();
+                let help = match near.as_slice() {
+                    [] => "give the limits instead: `± (UPPER, LOWER)` behind the size".into(),
+                    near => format!("classes near it that the table has at this size: {}", near.join(", ")),
+                };
                 self.report(
-                    Diagnostic::new(
-                        codes::NOT_SUPPORTED_YET,
-                        env.place(name.span),
-                        format!("the ISO 286 class {} is read, but its limits are not computed yet", name.text),
-                    )
-                    .with_help(
-                        "the size is taken as exact; write the limits as `± (+0.0, -0.02) mm` to have them carried",
-                    ),
+                    refuse(format!("{size} has no limits for the ISO 286 class {class}: {why}")).with_help(help),
                 );
-                Some(None)
+                None
             }
         }
     }

@@ -1,13 +1,15 @@
 //! Givens, derived quantities, unknowns, and the table they stand in.
 
-use super::literals::{Read, literal_of};
+use super::literals::{Read, SizeRead, literal_of};
 use super::value::{Typed, Value};
 use super::{Env, Equation, Lowerer};
 use crate::codes;
 use crate::model::{Input, InputTolerance, InputValue, Quantity};
 use crate::results::{Group, Shown};
 use pintle_graph::{NodeId, Op, QuantityId};
-use pintle_syntax::ast::{BinaryOp, Cite, Clauses, Definition, Expr, ExprKind, Item, Name, Range, Repeat, Wanted};
+use pintle_syntax::ast::{
+    BinaryOp, Cite, Clauses, Definition, Expr, ExprKind, Item, Literal, Name, Range, Repeat, Tolerance, Wanted,
+};
 use pintle_text::{Diagnostic, Place};
 use pintle_units::{Type, Unit};
 use smol_str::SmolStr;
@@ -116,7 +118,7 @@ impl<'s> Lowerer<'s, '_> {
             Some((negative, literal)) => {
                 let Some(mut read) = self.read_literal(&mut value_env, literal, negative) else { return Value::Failed };
                 if read.tolerance.is_none() && !std::ptr::eq(over, value) {
-                    read.tolerance = self.kept_tolerance(env, value, &read);
+                    read.tolerance = self.kept_tolerance(env, &value_env, value, &read, literal);
                 }
                 let node = self.new_input(&read, place).1;
                 (Typed { node, ty: read.ty, place }, read.unit)
@@ -147,8 +149,27 @@ impl<'s> Lowerer<'s, '_> {
 
     /// A case changes the value and keeps the tolerance: percent stays percent
     /// only where the case says so anew, so the deviations stay as they are.
-    fn kept_tolerance(&mut self, env: &mut Env, original: &Definition, read: &Read) -> Option<InputTolerance> {
+    /// An ISO 286 class stays the class, with the deviations of the new size.
+    fn kept_tolerance(
+        &mut self,
+        env: &mut Env,
+        case_env: &Env,
+        original: &Definition,
+        read: &Read,
+        size: &Literal,
+    ) -> Option<InputTolerance> {
         let (negative, literal) = literal_of(original)?;
+        if let Some(Tolerance::Class(class)) = &literal.tolerance {
+            let sized = SizeRead {
+                si: read.si,
+                unit: read.unit.as_ref(),
+                literal: size,
+                place: case_env.place(size.number_span),
+            };
+            return self
+                .class_limits(env.place(class.span), &class.text, &sized)
+                .map(|(low, high)| InputTolerance::Limits { low, high });
+        }
         let old = self.read_literal(env, literal, negative)?;
         Some(match old.tolerance? {
             InputTolerance::Limits { low, high } => {

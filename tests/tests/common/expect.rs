@@ -25,6 +25,10 @@ pub fn compare(solved: &Solved, expectations: &str) -> (Vec<String>, usize) {
                 solved.case(Some(rest)).is_none().then(|| format!("no case `{rest}`"))
             }
             "limit" => check_limit(solved, case.as_deref(), rest),
+            "low" | "high" if !rest.starts_with('=') => {
+                let end = if word == "low" { Solved::low } else { Solved::high };
+                check_number(rest, |name| end(solved, case.as_deref(), name), |_| String::new())
+            }
             "status" => check_status(solved, case.as_deref(), rest),
             "caution" => {
                 let wanted = rest.trim_matches('"');
@@ -50,13 +54,18 @@ pub fn compare(solved: &Solved, expectations: &str) -> (Vec<String>, usize) {
 }
 
 fn check_value(solved: &Solved, case: Option<&str>, line: &str) -> Option<String> {
+    check_number(line, |name| solved.si(case, name), |name| solved.near(name))
+}
+
+/// `NAME = NUMBER UNIT ~ TOLERANCE` against what `find` has for the name.
+fn check_number(line: &str, find: impl Fn(&str) -> Option<f64>, near: impl Fn(&str) -> String) -> Option<String> {
     let Some((name, value)) = line.split_once(" = ") else { return Some("this line is not understood".into()) };
     let (value, tolerance) = value.split_once(" ~ ").unwrap_or((value, ""));
     let tolerance: f64 = if tolerance.is_empty() { TOLERANCE } else { parse(tolerance)? };
     let (number, unit) = value.trim().split_once(' ').unwrap_or((value.trim(), "1"));
     let expected = units::si(parse(number)?, unit);
-    match solved.si(case, name) {
-        None => Some(format!("`{name}` has no value{}", solved.near(name))),
+    match find(name) {
+        None => Some(format!("`{name}` has no value{}", near(name))),
         // Nothing is near zero relatively; a zero is met to rounding of ordinary sizes.
         Some(found) => (!agrees(found, expected, tolerance, if expected == 0.0 { 1e-12 } else { 0.0 }))
             .then(|| format!("found {found} SI, expected {expected} SI, off by {:e}", (found - expected) / expected)),

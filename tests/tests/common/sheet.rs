@@ -58,6 +58,16 @@ impl Solved {
         self.case(case)?.quantity(name)?.si
     }
 
+    /// The lower limit of a quantity in SI.
+    pub fn low(&self, case: Option<&str>, name: &str) -> Option<f64> {
+        self.case(case)?.quantity(name)?.low
+    }
+
+    /// The upper limit of a quantity in SI.
+    pub fn high(&self, case: Option<&str>, name: &str) -> Option<f64> {
+        self.case(case)?.quantity(name)?.high
+    }
+
     /// Value and unit of a quantity as tables show them.
     pub fn shown(&self, name: &str) -> Option<(f64, String)> {
         let quantity = self.compilation.results.base.quantity(name)?;
