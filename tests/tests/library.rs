@@ -79,17 +79,3 @@ fn every_file_opens_with_its_documentation() {
         .collect();
     common::report(&faults, files.len());
 }
-
-#[test]
-fn every_file_stands_in_canonical_layout() {
-    let folders = ["../stdlib", "../stdlib/examples", "scenarios", "../compiler/src/commands"];
-    let files: Vec<PathBuf> =
-        folders.iter().flat_map(|folder| common::files(&common::folder().join(folder), "pintle")).collect();
-    let faults: Vec<String> = files
-        .iter()
-        .filter(|path| pintle_syntax::format(&common::read(path)) != common::read(path))
-        .map(|path| path.display().to_string())
-        .collect();
-    assert!(files.len() > 20, "{files:?}");
-    common::report(&faults, files.len());
-}

@@ -162,7 +162,7 @@ impl<'s> Lowerer<'s, '_> {
         if let Some(Tolerance::Class(class)) = &literal.tolerance {
             let sized = SizeRead {
                 si: read.si,
-                unit: read.unit.as_ref(),
+                unit: read.unit.as_deref(),
                 literal: size,
                 place: case_env.place(size.number_span),
             };

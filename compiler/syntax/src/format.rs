@@ -2,146 +2,199 @@
 //!
 //! Line breaks stay where the author put them, one blank line at most between
 //! two lines; blocks are indented by two, blanks between marks follow fixed
-//! rules, and neighbouring lines of one sort stand in columns. Items with faults are left byte for byte. Where braces do not match,
+//! rules. Items with faults are left byte for byte. Where braces do not match,
 //! indentation stays too, since it is all that tells what was meant.
+//!
+//! Neighbouring lines of one sort (givens, definitions, limits, fields ...)
+//! have their `=` or comparison, their clauses and their remarks in columns.
 //!
 //! `a=3 kg*m^2*( b+c )` → `a = 3 kg*m^2 * (b + c)`
 
-mod columns;
+mod align;
 mod plan;
+mod sorts;
 mod spacing;
 
 use pintle_lexer::Token;
 
-use columns::{Line, Sort};
+use align::{Line, align};
 use plan::{Piece, Plan};
+use sorts::{Column, Sort, column_of, sort_of};
 
 /// The text in canonical layout. The same tokens and comments, in the same
 /// order; formatting the result again changes nothing.
 pub fn format(text: &str) -> String {
     let plan = Plan::new(text);
     let newline = if plan.crlf { "\r\n" } else { "\n" };
-    let mut printer = Printer { plan: &plan, text, lines: Vec::new(), n_newlines: 2 };
+    let mut printer = Printer {
+        plan: &plan,
+        text,
+        newline,
+        out: String::with_capacity(text.len() + 64),
+        n_newlines: 2,
+        lines: Vec::new(),
+        depth: 0,
+        statement: "",
+    };
     printer.print();
-    columns::align(&mut printer.lines);
-    let mut out = String::with_capacity(text.len() + text.len() / 4 + 64);
-    if text.starts_with('\u{FEFF}') {
-        out.push('\u{FEFF}');
-    }
-    for line in &printer.lines {
-        if line.blank_before {
-            out.push_str(newline);
-        }
-        out.push_str(&line.text);
-        out.push_str(newline);
-    }
-    out
+    align(&printer.out, &mut printer.lines)
 }
 
 /// What is open around the token being printed.
 #[derive(Clone, Copy, PartialEq, Eq)]
-enum Opened {
-    /// Braces of a statement that begins with this word.
-    Block(Sort),
+enum Opened<'a> {
+    /// By the word that says what the lines in it are.
+    Block(&'a str),
     Bracket,
 }
 
 struct Printer<'a> {
     plan: &'a Plan,
     text: &'a str,
-    lines: Vec<Line>,
+    newline: &'static str,
+    out: String,
     /// Line ends since the last token; two at the start, so that no blank line comes first.
     n_newlines: usize,
+    /// The lines printed so far.
+    lines: Vec<Line<'a>>,
+    /// Brackets open on this line.
+    depth: usize,
+    /// The first word of the statement being printed.
+    statement: &'a str,
 }
 
-impl Printer<'_> {
+impl<'a> Printer<'a> {
     fn print(&mut self) {
-        let mut opened: Vec<Opened> = Vec::new();
+        if self.text.starts_with('\u{FEFF}') {
+            self.out.push('\u{FEFF}');
+        }
+        let mut opened: Vec<Opened<'a>> = Vec::new();
         let mut before: Option<&Piece> = None;
         let mut at = 0;
-        // The sort of the statement being printed.
-        let mut sort = Sort::Other;
+        let mut first = true;
         while let Some(piece) = self.plan.pieces.get(at) {
             at += 1;
             if piece.token == Token::Newline {
                 self.n_newlines += 1;
                 continue;
             }
-            if piece.starts {
-                sort = self.plan.sort(self.text, at - 1, opened.last());
-            }
-            let fresh = self.n_newlines > 0;
-            if fresh {
-                if let Some(line) = self.lines.last_mut() {
-                    line.whole &= opened.len() == line.depth;
+            let begins = self.n_newlines > 0;
+            let n_newlines = self.n_newlines;
+            if begins {
+                if !first {
+                    self.out.push_str(self.newline);
+                    if self.n_newlines > 1 {
+                        self.out.push_str(self.newline);
+                    }
                 }
-                let blank_before = self.n_newlines > 1 && !self.lines.is_empty();
-                let text = self.indent(piece, &opened);
-                let sort = if piece.starts && piece.verbatim.is_none() { sort } else { Sort::Other };
-                let is_remark = piece.token == Token::Comment;
-                let depth = opened.len();
-                self.lines.push(Line { text, blank_before, sort, depth, is_remark, whole: true, stops: Vec::new() });
-            } else if let (Some(before), Some(line)) = (before, self.lines.last_mut()) {
-                line.text.push_str(spacing::between(before, piece));
+                let start = self.out.len();
+                self.indent(piece, &opened);
+                self.begin_line(start, n_newlines, at, piece, &opened);
+            } else if let Some(before) = before {
+                let blanks = spacing::between(before, piece);
+                self.out.push_str(blanks);
+                if !blanks.is_empty() {
+                    self.note_stop(piece, before);
+                }
             }
-            let second = before.is_some_and(|before| before.starts);
-            let Some(line) = self.lines.last_mut() else { break };
-            // Only the statement that begins the line has columns, not those in its braces.
-            if !fresh
-                && opened.len() == line.depth
-                && let Some(column) = self.plan.column(self.text, at - 1, line.sort, second)
-                && line.stops.iter().all(|(known, _)| *known < column)
-            {
-                line.stops.push((column, line.text.len()));
+            if piece.starts {
+                self.statement = self.word(piece);
             }
+            first = false;
             self.n_newlines = 0;
             let end = match piece.verbatim {
                 // An item with faults: its bytes as they are.
                 Some(end) => {
-                    line.text.push_str(self.text.get(piece.span.start as usize..end as usize).unwrap_or(""));
+                    self.out.push_str(self.text.get(piece.span.start as usize..end as usize).unwrap_or(""));
                     end
                 }
                 None => {
                     let text = self.text.get(piece.span.range()).unwrap_or("");
                     let trimmed = matches!(piece.token, Token::Comment | Token::Prose);
-                    line.text.push_str(if trimmed { text.trim_end() } else { text });
+                    self.out.push_str(if trimmed { text.trim_end() } else { text });
                     piece.span.end
                 }
             };
-            note(&mut opened, piece.token, sort, piece.verbatim.is_none());
+            if piece.verbatim.is_none() {
+                let chooses = before.is_some_and(|before| self.word(before) == "choose");
+                self.note(&mut opened, piece.token, if chooses { "choose" } else { self.statement });
+            }
             before = Some(piece);
             while let Some(inside) = self.plan.pieces.get(at).filter(|inside| inside.span.start < end) {
                 before = Some(inside);
                 at += 1;
             }
         }
+        if !first {
+            self.out.push_str(self.newline);
+        }
     }
 
     /// The blanks before the first token of a line.
-    fn indent(&self, piece: &Piece, opened: &[Opened]) -> String {
+    fn indent(&mut self, piece: &Piece, opened: &[Opened<'_>]) {
         if let Some(kept) = piece.indent.filter(|_| self.plan.keeps_indent) {
-            return self.text.get(kept.range()).unwrap_or("").to_string();
+            self.out.push_str(self.text.get(kept.range()).unwrap_or(""));
+            return;
         }
         let closes = matches!(piece.token, Token::CloseBrace | Token::CloseParen | Token::CloseBracket);
         let levels = opened.len().saturating_sub(usize::from(closes));
         let in_bracket = opened.last() == Some(&Opened::Bracket);
         let goes_on = !piece.starts && !closes && !in_bracket && piece.token != Token::Comment;
-        "  ".repeat(levels + usize::from(goes_on))
-    }
-}
-
-/// Keeps account of what is open. A verbatim item opens and closes its own.
-fn note(opened: &mut Vec<Opened>, token: Token, sort: Sort, printed: bool) {
-    if !printed {
-        return;
-    }
-    match token {
-        Token::OpenBrace => opened.push(Opened::Block(sort)),
-        Token::OpenParen | Token::OpenBracket => opened.push(Opened::Bracket),
-        Token::CloseBrace | Token::CloseParen | Token::CloseBracket => {
-            opened.pop();
+        for _ in 0..levels + usize::from(goes_on) {
+            self.out.push_str("  ");
         }
-        _ => {}
+    }
+
+    fn word(&self, piece: &Piece) -> &'a str {
+        self.text.get(piece.span.range()).unwrap_or("")
+    }
+
+    /// Notes a line whose first token is about to be printed; `next` is the index of the piece behind it.
+    fn begin_line(&mut self, start: usize, n_newlines: usize, next: usize, piece: &Piece, opened: &[Opened<'_>]) {
+        let opener = match opened.last() {
+            Some(Opened::Block(word)) => word,
+            _ => "",
+        };
+        let may_run = piece.starts && piece.verbatim.is_none();
+        let next = self.plan.pieces.get(next).map(|next| (next.token, self.word(next)));
+        let sort = sort_of(opener, self.word(piece), next).filter(|_| may_run);
+        let apart = n_newlines > 1
+            || piece.verbatim.is_some()
+            || matches!(piece.token, Token::Prose | Token::Comment | Token::CloseBrace);
+        self.lines.push(Line { start, indent: self.out.len(), sort, apart, stops: Vec::new() });
+        self.depth = 0;
+    }
+
+    /// Notes a token that may stand in a column, about to be printed behind blanks.
+    fn note_stop(&mut self, piece: &Piece, before: &Piece) {
+        let at = self.out.len();
+        let text = self.word(piece);
+        let depth = self.depth;
+        let Some(line) = self.lines.last_mut() else { return };
+        if piece.token == Token::Comment {
+            line.stop(Column::Comment, at);
+        } else if let Some(sort) = line.sort.filter(|_| depth == 0) {
+            if before.starts && matches!(sort, Sort::Line(_)) {
+                line.stop(Column::Lead, at);
+            } else if let Some(column) = column_of(sort, line.last(), piece.token, text) {
+                line.stop(column, at);
+            }
+        }
+    }
+
+    /// Keeps account of what is open. A verbatim item opens and closes its own.
+    fn note(&mut self, opened: &mut Vec<Opened<'a>>, token: Token, word: &'a str) {
+        match token {
+            Token::OpenBrace => opened.push(Opened::Block(word)),
+            Token::OpenParen | Token::OpenBracket => opened.push(Opened::Bracket),
+            Token::CloseBrace | Token::CloseParen | Token::CloseBracket => {
+                opened.pop();
+                self.depth = self.depth.saturating_sub(1);
+                return;
+            }
+            _ => return,
+        }
+        self.depth += 1;
     }
 }
 
@@ -202,30 +255,49 @@ mod tests {
     }
 
     #[test]
-    fn neighbouring_lines_stand_in_columns() {
+    fn names_kinds_and_clauses_stand_in_columns() {
         check_format(
-            "given mass=3 t cite \"a\"\ngiven v : speed=2 m/s    cite \"b\" # c\ngiven way = 1 m # d",
-            "given mass      = 3 t   cite \"a\"\n\
-             given v : speed = 2 m/s cite \"b\"  # c\n\
-             given way       = 1 m             # d\n",
+            "given a=1 kg cite \"b\"\ngiven long_name:time=12.5 s   cite \"c\" # d\ngiven e:angle=3 rad",
+            "given a         = 1 kg            cite \"b\"\n\
+             given long_name : time  = 12.5 s  cite \"c\"  # d\n\
+             given e         : angle = 3 rad\n",
         );
-        check_format("a = 1 m\n\nlonger = 2 m", "a = 1 m\n\nlonger = 2 m\n");
-        check_format("a = 1 m\ngiven longer = 2 m", "a = 1 m\ngiven longer = 2 m\n");
-        check_format("ω_größte = 1\na = 2\n# c\nb = 3", "ω_größte = 1\na        = 2\n# c\nb        = 3\n");
+        check_format("ω = 1\nlänge = 2\n力 = 3", "ω     = 1\nlänge = 2\n力    = 3\n");
         check_format(
-            "ledger a of b {\nstart at rest\ntravel c 2 m\nlose heat = q\n}",
-            "ledger a of b {\n  start  at rest\n  travel c 2 m\n  lose   heat = q\n}\n",
+            "limit a<=1 because \"b\"\nlimit a.b>2 because \"c\" cite demo\nlimit e<=3 cite demo",
+            "limit a   <= 1  because \"b\"\nlimit a.b > 2   because \"c\"  cite demo\nlimit e   <= 3               cite demo\n",
         );
         check_format(
-            "train t {\ngear g=a->b{ratio=2}\nrope line=b->load{falls=1}\n}",
-            "train t {\n  gear g    = a -> b    { ratio = 2 }\n  rope line = b -> load { falls = 1 }\n}\n",
+            "ledger a of b {\nstart at rest\nlose c=1 J\nlose long=2 J\n}",
+            "ledger a of b {\n  start at rest\n  lose  c    = 1 J\n  lose  long = 2 J\n}\n",
+        );
+        check_format(
+            "train a {\ngear b=c->d{ratio=2}\nrope long=d->ef{falls=1}\n}",
+            "train a {\n  gear b    = c -> d  { ratio = 2 }\n  rope long = d -> ef { falls = 1 }\n}\n",
         );
     }
 
     #[test]
-    fn a_line_far_too_long_leaves_the_columns() {
-        let long = "a_name_that_is_far_longer_than_all_others_here";
-        check_format(&format!("a = 1\nbc = 2\n{long} = 3\nd=4"), &format!("a  = 1\nbc = 2\n{long} = 3\nd = 4\n"));
+    fn other_lines_end_a_run() {
+        check_format("a = 1\n\nlong = 2", "a = 1\n\nlong = 2\n");
+        check_format("a = 1\n| prose\nlong = 2", "a = 1\n| prose\nlong = 2\n");
+        check_format("a = 1\n# remark\nlong = 2", "a = 1\n# remark\nlong = 2\n");
+        check_format("a = 1\ngiven long = 2", "a = 1\ngiven long = 2\n");
+        check_format("a = 1\n  cite demo\nlong = 2", "a = 1\n  cite demo\nlong = 2\n");
+        check_format("a = 1\nb  =  (  3\nlong = 2", "a = 1\nb  =  (  3\nlong = 2\n");
+    }
+
+    #[test]
+    fn a_line_out_of_reach_does_not_push_the_others() {
+        check_format(
+            "a = 1\na_name_that_is_far_too_long_for_a_column = 2\nabc = 3",
+            "a   = 1\na_name_that_is_far_too_long_for_a_column = 2\nabc = 3\n",
+        );
+    }
+
+    #[test]
+    fn remarks_stand_under_each_other_whatever_their_lines_say() {
+        check_format("use std.rope # a\ngiven b = 1 # c", "use std.rope  # a\ngiven b = 1   # c\n");
     }
 
     #[test]

@@ -70,11 +70,16 @@ fn path<'s>(index: Parses<'s, Expr>) -> Parses<'s, Path> {
     let index =
         index.delimited_by(touching(Token::OpenBracket), mark(Token::CloseBracket).labelled(What::CloseBracket));
     let segment = name().then(index.or_not()).map(|(name, index)| Segment { name, index: index.map(Box::new) });
+    // Most paths are one word: they get room for one segment and no more.
     segment
-        .separated_by(mark(Token::Dot))
-        .at_least(1)
-        .collect()
-        .map_with(|segments, e| Path { segments, span: place(e.slice()) })
+        .clone()
+        .then(mark(Token::Dot).ignore_then(segment).repeated().collect::<Vec<Segment>>())
+        .map_with(|(first, more), e| {
+            let mut segments = Vec::with_capacity(1 + more.len());
+            segments.push(first);
+            segments.extend(more);
+            Path { segments, span: place(e.slice()) }
+        })
         .boxed()
 }
 

@@ -226,14 +226,26 @@ pub(super) fn literal<'s>(bound: Parses<'s, Expr>) -> Parses<'s, (Literal, Span)
 
 /// Everything that may be said of how sure a number is.
 fn tolerance<'s>(bound: Parses<'s, Expr>) -> Parses<'s, Tolerance> {
-    choice((
+    // Most numbers have none; one look spares trying every form.
+    let may_begin = select(|mark: Mark<'s>, _| {
+        let may = match mark.token {
+            Token::PlusMinus | Token::Tilde | Token::Plus => true,
+            Token::Word => {
+                matches!(mark.text, "within" | "in" | "u")
+                    || mark.text.len() <= 4 && mark.text.ends_with(|end: char| end.is_ascii_digit())
+            }
+            _ => false,
+        };
+        may.then_some(())
+    });
+    let any_form = choice((
         plus_minus(),
         within(bound),
         word("u").ignore_then(plain()).map(|literal| Tolerance::Standard(Box::new(literal))),
         class().map(Tolerance::Class),
         old_limits(),
-    ))
-    .boxed()
+    ));
+    may_begin.rewind().ignore_then(any_form).boxed()
 }
 
 /// `± 0.1 mm`, `± (+0.2, -0.0) mm`; `~` is an older spelling of the sign.

@@ -185,20 +185,36 @@ fn formatting_keeps_tokens_and_meaning() {
     assert_eq!(names(&format(WINCH)), names(WINCH));
 }
 
-#[test]
-fn formatting_keeps_the_sheets_of_the_library() {
-    let mut folders = vec![std::path::PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("../../stdlib")];
+/// Every sheet of a folder of the workspace and the folders in it, with its path.
+fn sheets(folder: &str) -> Vec<(std::path::PathBuf, String)> {
+    let mut folders = vec![std::path::PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("../..").join(folder)];
+    let mut sheets = Vec::new();
     while let Some(folder) = folders.pop() {
-        let entries: Vec<_> =
-            std::fs::read_dir(&folder).into_iter().flatten().flatten().map(|entry| entry.path()).collect();
-        for path in entries {
+        let entries = std::fs::read_dir(&folder).unwrap_or_else(|fault| panic!("{}: {fault}", folder.display()));
+        for path in entries.flatten().map(|entry| entry.path()) {
             if path.is_dir() {
                 folders.push(path);
             } else if path.extension().is_some_and(|extension| extension == "pintle") {
                 let text = std::fs::read_to_string(&path).unwrap_or_else(|fault| panic!("{}: {fault}", path.display()));
-                check_format_keeps(&text);
+                sheets.push((path, text));
             }
         }
+    }
+    assert!(!sheets.is_empty(), "no sheets in {folder}");
+    sheets
+}
+
+#[test]
+fn our_own_sheets_are_in_canonical_layout() {
+    for (path, text) in ["stdlib", "tests/scenarios", "compiler/src/commands"].into_iter().flat_map(sheets) {
+        assert_eq!(format(&text), text, "{}", path.display());
+    }
+}
+
+#[test]
+fn formatting_keeps_sheets_of_every_sort() {
+    for (_, text) in ["stdlib", "tests"].into_iter().flat_map(sheets) {
+        check_format_keeps(&text);
     }
 }
 
